@@ -1,0 +1,316 @@
+package horizon
+
+import (
+	"fmt"
+	"math"
+	"slices"
+
+	"gonum.org/v1/gonum/stat"
+
+	"tailrace/analysis/band"
+	"tailrace/analysis/correlation"
+	"tailrace/analysis/moments"
+	"tailrace/analysis/temperature"
+	"tailrace/gpe"
+	"tailrace/gpe/bogoliubov"
+	"tailrace/gpe/flow"
+)
+
+// Input is what an account is drawn up from.
+type Input struct {
+	Problem   *gpe.Problem
+	Sums      *moments.Sums
+	Shots     moments.Shots // |ψ|² of every trajectory at the time of the account
+	Current   []float64     // mean current there
+	Time      float64
+	Frame     Frame
+	Predicted flow.Profile // nil: the flow over the step at the measured density
+	Step      Step         // with Predicted nil
+	Settings  Settings
+	Cure      string // what to change when the plateau is not clean
+}
+
+// Step is the potential step, for a prediction at the measured density.
+type Step struct{ Depth, Width float64 }
+
+// Settings are the choices of the analysis.
+type Settings struct {
+	Near      float64 // closest the window comes to the horizon, in ξ
+	Fraction  float64 // of the way the partners have come that the window covers
+	Span      float64 // half the width of the cut, in units of 1/κ
+	Resamples int     // bootstrap
+	Shuffles  int     // null
+	Seed      uint64
+}
+
+// DefaultSettings are what `run` uses.
+var DefaultSettings = Settings{Near: 4, Fraction: 0.65, Span: 9, Resamples: 400, Shuffles: 1000, Seed: 1}
+
+// Flow is both sides and the horizon between them.
+type Flow struct {
+	Upstream, Downstream flow.State
+	Horizon              flow.Horizon // position from the step
+}
+
+// Geometry returns the speeds of the partners.
+func (f Flow) Geometry() band.Geometry {
+	return band.Geometry{Up: f.Upstream.SoundSpeed - f.Upstream.Velocity, Down: f.Downstream.Velocity - f.Downstream.SoundSpeed}
+}
+
+// Account is what a run says of its horizon.
+type Account struct {
+	Time         float64
+	Trajectories int
+	Measured     Flow // of the ensemble: windows' means
+	Predicted    Flow // of theory
+	MeanField    *Profile
+	Ensemble     *Profile
+	Map          *correlation.Map // positions from the horizon
+	Window       band.Window      // from the horizon
+	OmegaMax     float64
+	SechHeight   float64 // predicted A of the dispersionless band
+
+	Cut        *band.Cut
+	Line       *band.Line
+	Null       *band.Null
+	Width      *temperature.Width
+	WidthBias  float64 // what the width fit makes of the predicted band, over its temperature
+	Dispersive *temperature.Dispersive
+	Readings   []temperature.Reading
+
+	Ripples  []Ripple
+	Warnings []string
+}
+
+// PredictedTemperature returns κ/2π of the predicted flow.
+func (a *Account) PredictedTemperature() float64 { return a.Predicted.Horizon.Temperature }
+
+// Draw draws up the account. Its errors are *NoHorizonError, *band.ErrWindow
+// and *flow.NoFlow; a fit that fails is not an error but a warning, and leaves
+// its field nil.
+func Draw(in Input) (*Account, error) {
+	p := in.Problem
+	a := &Account{Time: in.Time, Trajectories: in.Sums.Count}
+	density, current, err := gpe.MeanField(p, []float64{in.Time})
+	if err != nil {
+		return nil, err
+	}
+	if a.MeanField, err = NewProfile(p, in.Frame, density[0], current[0], in.Time); err != nil {
+		return nil, err
+	}
+	if err := a.predict(in); err != nil {
+		return nil, err
+	}
+	geometry := a.Predicted.Geometry()
+	a.OmegaMax = bogoliubov.MaxFrequency(a.Predicted.Downstream.Velocity, a.Predicted.Downstream.SoundSpeed)
+	a.SechHeight = bogoliubov.SechAmplitude(a.Predicted.Horizon.SurfaceGravity, a.Predicted.Upstream, a.Predicted.Downstream, p.AtomsPerLength)
+	a.Window = band.AgedWindow(geometry, in.Frame.Age, in.Settings.Near, in.Settings.Fraction)
+
+	x := make([]float64, p.Grid.N)
+	for j := range x {
+		x[j] = a.MeanField.X[j] - a.MeanField.Horizon.Position
+	}
+	a.Map, err = correlation.New(in.Sums, in.Shots, x, ordering(p, density[0], current[0]))
+	if err != nil {
+		return nil, err
+	}
+	sides, err := band.NewSides(in.Shots, x, a.Map.MeanDensity, a.Window)
+	if err != nil {
+		return nil, err
+	}
+	a.measure(in)
+	a.searchBand(sides, geometry, in)
+	a.judge(in)
+	return a, nil
+}
+
+// predict fills in the theory of the flow.
+func (a *Account) predict(in Input) error {
+	profile := in.Predicted
+	if profile == nil {
+		// Near the step a harmonic cloud is as good as uniform; what happens
+		// there is set by the plateau that leads up to it.
+		local := a.MeanField.state(a.MeanField.Horizon.Position-in.Settings.Near-8, a.MeanField.Horizon.Position-in.Settings.Near)
+		t, err := flow.OverStep(in.Problem.Law, local.Density, in.Step.Depth, in.Step.Width)
+		if err != nil {
+			return fmt.Errorf("over the step at the density found upstream, %.4g: %w", local.Density, err)
+		}
+		profile = t
+	}
+	a.Predicted.Upstream, a.Predicted.Downstream, a.Predicted.Horizon = profile.Ends()
+	return nil
+}
+
+// ordering is the normal ordering of p's noise. With a cut-off the commutator
+// is the kernel of the waves that carry noise and the coherence is taken from
+// the mean field.
+func ordering(p *gpe.Problem, density, current []float64) correlation.Ordering {
+	o := correlation.Ordering{Commutator: p.Commutator()}
+	if p.Cutoff <= 0 || p.Cutoff >= p.Grid.MaxWavenumber() {
+		return o
+	}
+	waves := math.Floor(p.Cutoff * p.Grid.Length() / (2 * math.Pi))
+	o.Kernel = func(i, j int) float64 {
+		// Σ_{|q| ≤ waves} e^{2πiq(i−j)/N}: Dirichlet's kernel.
+		half := math.Pi * float64(i-j) / float64(p.Grid.N)
+		return math.Sin((2*waves+1)*half) / math.Sin(half) / (p.AtomsPerLength * p.Grid.Length())
+	}
+	phase := make([]float64, p.Grid.N)
+	drift := p.Landscape.Drift()
+	for j := 1; j < len(phase); j++ {
+		v := 0.0
+		if density[j] > 1e-3 {
+			v = current[j]/density[j] - drift
+		}
+		phase[j] = phase[j-1] + v*p.Grid.Dx
+	}
+	o.Coherence = func(i, j int) float64 {
+		return math.Sqrt(density[i]*density[j]) * math.Cos(phase[i]-phase[j])
+	}
+	return o
+}
+
+// measure takes the ensemble's flow in the windows.
+func (a *Account) measure(in Input) {
+	h := a.MeanField.Horizon.Position
+	w := a.Window
+	profile, err := NewProfile(in.Problem, in.Frame, a.Map.MeanDensity, in.Current, in.Time)
+	if err != nil {
+		// The ensemble's mean has too much noise at the step: the mean field
+		// has the horizon.
+		profile = a.MeanField
+	}
+	a.Ensemble = profile
+	// Its κ is a derivative of noisy data: the horizon is the mean field's.
+	a.Measured = Flow{profile.state(h+w.UpFar, h+w.UpNear), profile.state(h+w.DownNear, h+w.DownFar), a.MeanField.Horizon}
+	a.Ripples = []Ripple{
+		a.MeanField.ripple("upstream", h+w.UpFar, h+w.UpNear),
+		a.MeanField.ripple("downstream", h+w.DownNear, h+w.DownFar),
+	}
+}
+
+func (a *Account) warn(format string, args ...any) {
+	a.Warnings = append(a.Warnings, fmt.Sprintf(format, args...))
+}
+
+// searchBand measures the band in the window in every way there is.
+func (a *Account) searchBand(sides *band.Sides, g band.Geometry, in Input) {
+	s := in.Settings
+	kappa := a.Predicted.Horizon.SurfaceGravity
+	t := a.PredictedTemperature()
+	theory := bogoliubov.NewBand(a.Predicted.Upstream, a.Predicted.Downstream, in.Problem.AtomsPerLength)
+	pattern := theory.Over(sides.Xu, sides.Xd, t/2, 1).Map(nil, t, 0)
+	a.Null = band.Shuffle(sides, band.Template(sides, pattern), s.Shuffles, s.Seed)
+
+	bins := band.NewBins(g, sides.Xu, sides.Xd, s.Span/kappa)
+	a.Cut = band.NewCut(sides, g, bins)
+	var err error
+	if a.Line, err = band.FitLine(sides, g, kappa, s.Resamples/4, s.Seed); err != nil {
+		a.warn("%v", err)
+	}
+	if a.Width, err = temperature.FitWidth(a.Cut, kappa, s.Resamples, s.Seed); err != nil {
+		a.warn("%v", err)
+	}
+	if a.Dispersive, err = temperature.FitDispersive(a.Cut, sides, g, theory, t, s.Resamples, s.Seed); err != nil {
+		a.warn("%v", err)
+	}
+	if a.Dispersive != nil {
+		a.WidthBias = temperature.WidthBias(a.Cut, a.Dispersive.Predicted(t), kappa) / t
+	}
+}
+
+// Limits of trust. The significance is common practice, no source; the bias is
+// a third of the interval a good run reaches.
+const (
+	significant = 5
+	fairWidth   = 0.1 // bias of the width fit on the predicted band
+	fairTop     = 0.5 // T_H/ω_max beyond which a thermal spectrum is cut off
+)
+
+// judge turns fits into readings and says which to trust.
+func (a *Account) judge(in Input) {
+	seen := a.Null.Significance >= significant
+	weak := fmt.Sprintf("the band stands out by %.1f standard deviations only, %d are asked for", a.Null.Significance, significant)
+	if !seen {
+		a.warn("%s: about %.0f trajectories would do", weak, math.Ceil(float64(a.Trajectories)*math.Pow(significant/math.Max(a.Null.Significance, 0.5), 2)/100)*100)
+	}
+	if a.Width != nil {
+		r := temperature.Reading{Method: "width"}
+		r.Value, r.Low, r.High = a.Width.Temperature()
+		switch {
+		case a.WidthBias == 0 || math.IsNaN(a.WidthBias):
+			r.Why = "what dispersion does to the width could not be computed"
+		case math.Abs(a.WidthBias-1) > fairWidth:
+			r.Why = fmt.Sprintf("dispersion spreads the band on its way: a width fit to the predicted band in this window reads %.2f of its temperature", a.WidthBias)
+		case !seen:
+			r.Why = weak
+		default:
+			r.Trusted, r.Why = true, fmt.Sprintf("a width fit to the predicted band in this window reads %.2f of its temperature", a.WidthBias)
+		}
+		a.Readings = append(a.Readings, r)
+	}
+	if a.Dispersive != nil {
+		r := temperature.Reading{Method: "dispersive"}
+		r.Value, r.Low, r.High = a.Dispersive.Temperature()
+		ratio := a.PredictedTemperature() / a.OmegaMax
+		switch {
+		case !seen:
+			r.Why = weak
+		case ratio > fairTop:
+			r.Why = fmt.Sprintf("T_H is %.2f of ω_max: so much of the thermal spectrum is cut off that its temperature is not defined", ratio)
+		case math.IsNaN(r.Low):
+			r.Why = "the bootstrap failed"
+		default:
+			r.Trusted, r.Why = true, "keeps the dispersion, with the height given by the density; takes the spectrum for thermal, which a sharp step's is not quite (up to 15 % above the low-frequency temperature)"
+		}
+		a.Readings = append(a.Readings, r)
+	}
+	for _, r := range a.Ripples {
+		if w := r.Warning(in.Cure); w != "" {
+			a.Warnings = append(a.Warnings, w)
+		}
+	}
+}
+
+// WindowMean returns the mean and the standard error over shots of the density
+// in lo < x < hi of the map's positions, normally ordered.
+func (a *Account) WindowMean(shots moments.Shots, commutator, lo, hi float64) (mean, err float64) {
+	var columns []int
+	for j, x := range a.Map.X {
+		if lo < x && x < hi {
+			columns = append(columns, j)
+		}
+	}
+	v := make([]float64, shots.Count())
+	for i := range v {
+		for _, j := range columns {
+			v[i] += float64(shots.Shot(i)[j])
+		}
+		v[i] = v[i]/float64(len(columns)) - commutator/2
+	}
+	m, sd := stat.MeanStdDev(v, nil)
+	return m, sd / math.Sqrt(float64(len(v)))
+}
+
+// Robust returns the q-quantile of |g₂−1| off the diagonal, inside |x| < reach:
+// the colour limit of a figure.
+func (a *Account) Robust(q, reach float64) float64 {
+	var v []float64
+	for i, x := range a.Map.X {
+		if math.Abs(x) > reach {
+			continue
+		}
+		for j := i + 4; j < len(a.Map.X); j++ {
+			if math.Abs(a.Map.X[j]) < reach {
+				if g := math.Abs(a.Map.G2.At(i, j)); !math.IsNaN(g) {
+					v = append(v, g)
+				}
+			}
+		}
+	}
+	if len(v) == 0 {
+		return math.NaN()
+	}
+	slices.Sort(v)
+	return stat.Quantile(q, stat.Empirical, v, nil)
+}

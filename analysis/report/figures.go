@@ -1,0 +1,172 @@
+package report
+
+import (
+	"fmt"
+	"math"
+
+	"tailrace/analysis/figure"
+)
+
+// SpaceTime is the noise-free density during the sweep: Density[i] at Time[i]
+// on the run's grid, in condensate units.
+type SpaceTime struct {
+	Time    []float64
+	X       []float64 // in the laboratory, from the middle of the cloud
+	Density [][]float64
+	Step    []float64 // its position at each time; nil for a flow at rest
+	// Wave is the front of the simple wave, nil for a flow at rest.
+	Wave []float64
+}
+
+// Figures writes the run's figures into folder, which must exist, as PNG and
+// SVG, and returns their names.
+func (r *Run) Figures(folder string) ([]string, error) {
+	pages := []struct {
+		name string
+		page *figure.Page
+	}{
+		{"flow", r.flowFigure()}, {"map", r.mapFigure()}, {"cut", r.cutFigure()},
+		{"space-time", r.spaceTimeFigure()}, {"null", r.nullFigure()},
+	}
+	var names []string
+	for _, p := range pages {
+		if p.page == nil {
+			continue
+		}
+		if err := p.page.Save(folder, p.name); err != nil {
+			return names, err
+		}
+		names = append(names, p.name)
+	}
+	return names, nil
+}
+
+// view is how far from the horizon figures reach: the window and some more.
+func (r *Run) view() (lo, hi float64) {
+	w := r.Account.Window
+	return 2.2*w.UpFar - 10, 1.25*w.DownFar + 5
+}
+
+func (r *Run) span(lo, hi float64) figure.Range {
+	return figure.Range{Min: r.Units.Value(lo, Length), Max: r.Units.Value(hi, Length)}
+}
+
+func (r *Run) flowFigure() *figure.Page {
+	a, u := r.Account, r.Units
+	lo, hi := r.view()
+	f := figure.Flow{
+		Horizon: 0, Upstream: r.span(a.Window.UpFar, a.Window.UpNear), Downstream: r.span(a.Window.DownNear, a.Window.DownFar),
+		LengthUnit: u.Unit(Length), DensityUnit: u.Unit(Density),
+		Density: figure.Points{Name: "ensemble"}, Mach: figure.Points{Name: "ensemble"},
+		PredictedDensity: figure.Curve{Name: "without noise"}, PredictedMach: figure.Curve{Name: "without noise"},
+	}
+	for j, x := range a.Map.X {
+		if x < lo || x > hi || math.IsNaN(a.MeanField.Velocity[j]) {
+			continue
+		}
+		v := u.Value(x, Length)
+		f.Density.X = append(f.Density.X, v)
+		f.Density.Y = append(f.Density.Y, u.Value(a.Map.MeanDensity[j], Density))
+		f.Mach.X = append(f.Mach.X, v)
+		f.Mach.Y = append(f.Mach.Y, a.Ensemble.Velocity[j]/a.Ensemble.SoundSpeed[j])
+		f.PredictedDensity.X = append(f.PredictedDensity.X, v)
+		f.PredictedDensity.Y = append(f.PredictedDensity.Y, u.Value(a.MeanField.Density[j], Density))
+		f.PredictedMach.X = append(f.PredictedMach.X, v)
+		f.PredictedMach.Y = append(f.PredictedMach.Y, a.MeanField.Velocity[j]/a.MeanField.SoundSpeed[j])
+	}
+	return f.Page()
+}
+
+func (r *Run) mapFigure() *figure.Page {
+	a, u := r.Account, r.Units
+	lo, hi := r.view()
+	var columns []int
+	f := figure.Map{LengthUnit: u.Unit(Length), WindowX: r.span(a.Window.UpFar, a.Window.UpNear), WindowXPrime: r.span(a.Window.DownNear, a.Window.DownFar)}
+	for j, x := range a.Map.X {
+		if x >= lo && x <= hi {
+			columns = append(columns, j)
+		}
+	}
+	// Cells of about half a healing length and more show the band; single grid
+	// points show their own noise.
+	cell := max(1, len(columns)/160)
+	n := len(columns) / cell
+	f.Value = make([]float64, n*n)
+	for i := range n {
+		f.Position = append(f.Position, u.Value((a.Map.X[columns[i*cell]]+a.Map.X[columns[i*cell+cell-1]])/2, Length))
+		for j := range n {
+			sum := 0.0
+			for _, p := range columns[i*cell : (i+1)*cell] {
+				for _, q := range columns[j*cell : (j+1)*cell] {
+					sum += a.Map.G2.At(p, q)
+				}
+			}
+			f.Value[i*n+j] = sum / float64(cell*cell)
+		}
+	}
+	f.Limit = figure.OffDiagonalLimit(f.Value, n, 4, 0.995)
+	g := a.Predicted.Geometry()
+	f.Band = figure.Curve{Name: "predicted band",
+		X: []float64{0, u.Value(a.Window.UpFar*1.5, Length)},
+		Y: []float64{0, u.Value(a.Window.UpFar*1.5*g.Slope(), Length)}}
+	return f.Page()
+}
+
+func (r *Run) cutFigure() *figure.Page {
+	a, u := r.Account, r.Units
+	if a.Cut == nil {
+		return nil
+	}
+	// The delay s is shown as a distance at the upstream partner's speed.
+	up := a.Predicted.Geometry().Up
+	place := func(s float64) float64 { return u.Value(s*up, Length) }
+	f := figure.Cut{Across: "distance across the band, upstream", Unit: u.Unit(Length), Measured: figure.Points{Name: fmt.Sprintf("%d trajectories", a.Trajectories)}}
+	for b, s := range a.Cut.S {
+		f.Measured.X = append(f.Measured.X, place(s))
+		f.Measured.Y = append(f.Measured.Y, a.Cut.Mean[b])
+		f.Measured.Error = append(f.Measured.Error, a.Cut.Error[b])
+	}
+	if a.Width != nil {
+		f.Fit.Name = "fit of sech²"
+		first, last := a.Cut.S[0], a.Cut.S[len(a.Cut.S)-1]
+		const fine = 200
+		for i := range fine + 1 {
+			s := first + (last-first)*float64(i)/fine
+			lo, hi := a.Width.Limits(s)
+			f.Fit.X, f.Fit.Y = append(f.Fit.X, place(s)), append(f.Fit.Y, a.Width.Model(s))
+			f.Low, f.High = append(f.Low, lo), append(f.High, hi)
+		}
+	}
+	if a.Dispersive != nil {
+		f.Predicted = append(f.Predicted,
+			figure.Curve{Name: "fit with dispersion", X: f.Measured.X, Y: a.Dispersive.Model()},
+			figure.Curve{Name: "theory at κ/2π", X: f.Measured.X, Y: a.Dispersive.Predicted(a.PredictedTemperature())})
+	}
+	return f.Page()
+}
+
+func (r *Run) spaceTimeFigure() *figure.Page {
+	s, u := r.SpaceTime, r.Units
+	if len(s.Time) == 0 {
+		return nil
+	}
+	f := figure.SpaceTime{Position: u.Values(s.X, Length), Time: u.Values(s.Time, Time),
+		LengthUnit: u.Unit(Length), TimeUnit: u.Unit(Time), DensityUnit: u.Unit(Density)}
+	for _, row := range s.Density {
+		f.Density = append(f.Density, u.Values(row, Density)...)
+	}
+	if s.Step != nil {
+		f.Step = figure.Curve{Name: "step", X: u.Values(s.Step, Length), Y: f.Time}
+	}
+	if s.Wave != nil {
+		f.Characteristics = []figure.Curve{{Name: "front of the wave, at c₀", X: u.Values(s.Wave, Length), Y: f.Time}}
+	}
+	return f.Page()
+}
+
+func (r *Run) nullFigure() *figure.Page {
+	n := r.Account.Null
+	return figure.Null{Shuffled: n.Shuffled, Measured: n.Strength,
+		Strength: "strength of the band over its prediction",
+		Note:     fmt.Sprintf("%.1f standard deviations", n.Significance)}.Page()
+}

@@ -1,0 +1,144 @@
+package report
+
+import (
+	"encoding/json"
+	"math"
+	"time"
+
+	"tailrace/analysis/horizon"
+	"tailrace/gpe"
+	"tailrace/gpe/flow"
+	"tailrace/gpe/lab"
+)
+
+// Run is all that a report of a run is made from.
+type Run struct {
+	Title, Config, Version string
+	Units                  Units
+	Account                *horizon.Account
+	Problem                *gpe.Problem
+	Conserved              gpe.Conserved
+	Checks                 []lab.Check
+	Warnings               []string
+	Engine                 Engine
+	SpaceTime              SpaceTime
+}
+
+// Engine is how fast the ensemble ran.
+type Engine struct {
+	Kernel          string
+	Workers         int
+	Steps           int           // time steps of a trajectory
+	StepTime        time.Duration // in time steps, summed over workers
+	Wall            time.Duration
+	Trajectories    int // that ran in this session
+	NoiseModes      string
+	ModesFromCache  bool
+	PointsPerSecond float64
+}
+
+// PerPoint returns the nanoseconds per grid point and time step of one
+// trajectory, on one core.
+func (e Engine) PerPoint(points int) float64 {
+	if e.Trajectories == 0 {
+		return math.NaN()
+	}
+	return float64(e.StepTime.Nanoseconds()) / float64(e.Trajectories) / float64(e.Steps) / float64(points)
+}
+
+// PerSecond returns trajectories per second of wall time.
+func (e Engine) PerSecond() float64 { return float64(e.Trajectories) / e.Wall.Seconds() }
+
+func (r *Run) state(s flow.State) object {
+	var o object
+	o.with(r.Units, "density", s.Density, Density)
+	o.with(r.Units, "velocity", s.Velocity, Speed)
+	o.with(r.Units, "sound_speed", s.SoundSpeed, Speed)
+	o.set("mach", number(s.Mach()))
+	return o
+}
+
+func (r *Run) flow(f horizon.Flow) object {
+	var h, o object
+	h.with(r.Units, "position", f.Horizon.Position, Length)
+	h.with(r.Units, "surface_gravity", f.Horizon.SurfaceGravity, Rate)
+	h.with(r.Units, "hawking_temperature", f.Horizon.Temperature, Temperature)
+	o.set("upstream", r.state(f.Upstream))
+	o.set("downstream", r.state(f.Downstream))
+	o.set("horizon", h)
+	return o
+}
+
+// Result returns the object of result.json. `flow` is the theory's, and
+// `measured_flow` the ensemble's.
+func (r *Run) Result() any {
+	a := r.Account
+	var o object
+	o.set("title", r.Title)
+	o.set("config", r.Config)
+	o.set("version", r.Version)
+	o.set("units", map[bool]string{true: "lab", false: "condensate"}[r.Units.Lab])
+	o.set("trajectories", a.Trajectories)
+	o.with(r.Units, "time", a.Time, Time)
+	o.set("flow", r.flow(a.Predicted))
+	o.set("measured_flow", r.flow(a.Measured))
+	o.with(r.Units, "omega_max", a.OmegaMax, Rate)
+	o.set("band", r.band())
+	var temperatures []object
+	for _, t := range a.Readings {
+		var v object
+		v.set("method", t.Method)
+		v.with(r.Units, "value", t.Value, Temperature)
+		v.with(r.Units, "low", t.Low, Temperature)
+		v.with(r.Units, "high", t.High, Temperature)
+		v.set("trusted", t.Trusted)
+		v.set("why", t.Why)
+		temperatures = append(temperatures, v)
+	}
+	o.set("temperatures", temperatures)
+	var kept object
+	kept.set("atoms_relative", number(r.Conserved.NormDrift))
+	kept.with(r.Units, "energy_per_atom_over_kB", r.Conserved.EnergyDrift, Temperature)
+	o.set("conservation", kept)
+	o.set("checks", r.Checks)
+	o.set("warnings", append([]string{}, r.Warnings...))
+	return o
+}
+
+func (r *Run) band() object {
+	a := r.Account
+	g := a.Predicted.Geometry()
+	var o object
+	if w := a.Width; w != nil {
+		o.set("amplitude", number(w.Amplitude))
+		if w.Covariance != nil {
+			o.set("amplitude_error", number(math.Sqrt(w.Covariance.At(0, 0))))
+		}
+		o.with(r.Units, "delay", w.Delay, Time)
+		o.set("offset", number(w.Offset))
+		o.set("chi_square", number(w.ChiSquare))
+		o.set("degrees_of_freedom", w.DegreesOfFreedom)
+	}
+	o.set("amplitude_predicted_without_dispersion", number(a.SechHeight))
+	if l := a.Line; l != nil {
+		o.set("slope", number(l.Slope))
+		o.set("slope_error", number(l.SlopeError))
+	}
+	o.set("slope_predicted", number(g.Slope()))
+	o.set("significance", number(a.Null.Significance))
+	o.set("p_value", number(a.Null.PValue))
+	o.set("strength_over_predicted", number(a.Null.Strength))
+	var w object
+	w.with(r.Units, "upstream_far", a.Window.UpFar, Length)
+	w.with(r.Units, "upstream_near", a.Window.UpNear, Length)
+	w.with(r.Units, "downstream_near", a.Window.DownNear, Length)
+	w.with(r.Units, "downstream_far", a.Window.DownFar, Length)
+	o.set("window", w)
+	return o
+}
+
+// JSON returns result.json.
+func (r *Run) JSON() ([]byte, error) {
+	b, err := json.MarshalIndent(r.Result(), "", "  ")
+	return append(b, '\n'), err
+}

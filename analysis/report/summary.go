@@ -1,0 +1,117 @@
+package report
+
+import (
+	"fmt"
+	"io"
+	"math"
+	"strings"
+	"text/tabwriter"
+
+	"tailrace/gpe/flow"
+)
+
+// Summary prints the account as a page of text.
+func (r *Run) Summary(w io.Writer) error {
+	a, u := r.Account, r.Units
+	var b strings.Builder
+	fmt.Fprintf(&b, "%s\n%d trajectories, read %s after the start\n\n", r.Title, a.Trajectories, u.say(a.Time, Time))
+	t := tabwriter.NewWriter(&b, 0, 0, 2, ' ', tabwriter.AlignRight)
+	row := func(cells ...string) { fmt.Fprintln(t, strings.Join(cells, "\t")+"\t") }
+	row("", "upstream", "", "", "downstream", "", "")
+	row("", "theory", "measured", "off", "theory", "measured", "off")
+	line := func(name string, d Dimension, get func(flow.State) float64) {
+		cells := []string{name}
+		for _, pair := range [][2]flow.State{{a.Predicted.Upstream, a.Measured.Upstream}, {a.Predicted.Downstream, a.Measured.Downstream}} {
+			p, m := get(pair[0]), get(pair[1])
+			cells = append(cells, fmt.Sprintf("%.4g", u.Value(p, d)), fmt.Sprintf("%.4g", u.Value(m, d)), fmt.Sprintf("%+.1f %%", 100*(m/p-1)))
+		}
+		row(cells...)
+	}
+	line(u.named("density", Density), Density, func(s flow.State) float64 { return s.Density })
+	line(u.named("velocity", Speed), Speed, func(s flow.State) float64 { return s.Velocity })
+	line(u.named("sound speed", Speed), Speed, func(s flow.State) float64 { return s.SoundSpeed })
+	line("Mach number", Pure, flow.State.Mach)
+	t.Flush()
+	b.WriteByte('\n')
+
+	h, m := a.Predicted.Horizon, a.Measured.Horizon
+	t = tabwriter.NewWriter(&b, 0, 0, 2, ' ', 0)
+	pair := func(name, theory, measured string) { fmt.Fprintf(t, "%s\t%s\t%s\n", name, theory, measured) }
+	pair("", "theory", "measured")
+	pair("horizon, from the step", u.say(h.Position, Length), u.say(m.Position, Length))
+	pair("surface gravity κ", u.say(h.SurfaceGravity, Rate), u.say(m.SurfaceGravity, Rate))
+	pair("κ/2π, as a temperature", u.say(h.Temperature, Temperature), u.say(m.Temperature, Temperature))
+	g := a.Predicted.Geometry()
+	slope := "not found"
+	if a.Line != nil && a.Line.SlopeError > 0 {
+		slope = fmt.Sprintf("%.3g ± %.2g (ratio %.3f)", a.Line.Slope, a.Line.SlopeError, a.Line.Slope/g.Slope())
+	}
+	pair("slope of the band", fmt.Sprintf("%.3g", g.Slope()), slope)
+	pair("strength of the band", "1", fmt.Sprintf("%.2f, %.1f standard deviations above the null", a.Null.Strength, a.Null.Significance))
+	t.Flush()
+	b.WriteByte('\n')
+
+	notes := append([]string{}, r.Warnings...)
+	note := func(text string) string {
+		notes = append(notes, text)
+		return fmt.Sprintf("[%d]", len(notes))
+	}
+	t = tabwriter.NewWriter(&b, 0, 0, 2, ' ', 0)
+	fmt.Fprintf(t, "temperature\tvalue\t68 %% interval\tof κ/2π\t\n")
+	for _, v := range a.Readings {
+		trust := "not trusted"
+		if v.Trusted {
+			trust = "trusted"
+		}
+		fmt.Fprintf(t, "%s\t%s\t%.3g to %s\t%.2f\t%s %s\n", v.Method, u.say(v.Value, Temperature),
+			u.Value(v.Low, Temperature), u.say(v.High, Temperature), v.Value/h.Temperature, trust, note(v.Method+": "+v.Why))
+	}
+	t.Flush()
+	b.WriteByte('\n')
+
+	fmt.Fprintf(&b, "kept in every trajectory: atoms to %.1g, energy to %.1g of m c₀² an atom\n", math.Abs(r.Conserved.NormDrift), math.Abs(r.Conserved.EnergyDrift))
+	fmt.Fprintf(&b, "engine: %.3g ns a point and step, %.3g trajectories a second on %d workers, kernel %s\n",
+		r.Engine.PerPoint(r.Problem.Grid.N), r.Engine.PerSecond(), r.Engine.Workers, r.Engine.Kernel)
+	fmt.Fprintf(&b, "noise: %s\n", r.Engine.NoiseModes)
+	for _, c := range r.Checks {
+		if !c.OK {
+			note(fmt.Sprintf("%s: %.3g, at most %.3g: %s", c.Name, c.Value, c.Limit, c.Why))
+		}
+	}
+	if len(notes) > 0 {
+		b.WriteByte('\n')
+		for i, n := range notes {
+			fmt.Fprintln(&b, wrap(fmt.Sprintf("[%d] %s", i+1, n), 96, "    "))
+		}
+	}
+	_, err := io.WriteString(w, b.String())
+	return err
+}
+
+// say prints a value with its unit.
+func (u Units) say(x float64, d Dimension) string {
+	return strings.TrimSpace(fmt.Sprintf("%.3g %s", u.Value(x, d), u.Unit(d)))
+}
+
+// named prints the name of a row with its unit.
+func (u Units) named(name string, d Dimension) string {
+	return fmt.Sprintf("%s, %s", name, u.Unit(d))
+}
+
+// wrap breaks text at spaces to lines of at most width, later ones indented.
+func wrap(text string, width int, indent string) string {
+	var lines []string
+	line := ""
+	for _, word := range strings.Fields(text) {
+		if line != "" && len([]rune(line))+1+len([]rune(word)) > width {
+			lines = append(lines, line)
+			line = indent + word
+			continue
+		}
+		if line != "" {
+			line += " "
+		}
+		line += word
+	}
+	return strings.Join(append(lines, line), "\n")
+}

@@ -1,0 +1,239 @@
+package gpe
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"math"
+	"sync"
+	"time"
+
+	"tailrace/gpe/fluid"
+	"tailrace/gpe/lanes"
+)
+
+// Problem is one scenario in condensate units: all that an ensemble depends
+// on. NewEnsemble does the work that its trajectories share.
+type Problem struct {
+	Grid           Grid
+	Law            fluid.Law
+	Landscape      Landscape
+	Ground         *Ground
+	Noise          Noise
+	AtomsPerLength float64 // n₀ξ
+	Temperature    float64 // of the cloud, m c₀²/k_B
+	Cutoff         float64 // of the noise, 0 for the whole grid
+	Scheme         Scheme
+	TimeStep       float64
+	Times          []float64 // recorded, rising, from 0
+	Seed           uint64
+}
+
+// Commutator returns s = [ψ(x),ψ†(x)] in units of n₀: the number of modes
+// that carry noise per length over n₀ξ.
+func (p *Problem) Commutator() float64 {
+	if p.Cutoff <= 0 || p.Cutoff >= p.Grid.MaxWavenumber() {
+		return 1 / (p.AtomsPerLength * p.Grid.Dx)
+	}
+	waves := 2*math.Floor(p.Cutoff*p.Grid.Length()/(2*math.Pi)) + 1
+	return waves / (p.AtomsPerLength * p.Grid.Length())
+}
+
+// Atoms returns the number of atoms in the cloud.
+func (p *Problem) Atoms() float64 { return p.Ground.Atoms * p.AtomsPerLength }
+
+// Quantum is the grain to which recorded densities (in n₀) and currents (in
+// n₀c₀) are rounded. Products of two densities are then multiples of
+// Quantum², and sums of them are exact in float64 as long as they stay below
+// 2⁵³·Quantum² = 131,072: so moments do not depend on the order of adding,
+// on how many workers there were, or on how a run was cut into parts. The
+// rounding, 10⁻⁶ of n₀, is far below the quantum noise of one grid point.
+const Quantum = 0x1p-18
+
+// MaxDensity is the largest density that a record can hold, 2²⁴ Quantum: up
+// to it densities are exact in float32.
+const MaxDensity = 0x1p24 * Quantum
+
+// MaxTrajectories bounds an ensemble so that sums of products of densities of
+// order one stay exact.
+const MaxTrajectories = 65536
+
+// Record is one batch of trajectories at one recorded time.
+type Record struct {
+	Time    int // index into Problem.Times
+	First   int // index of the trajectory in lane 0
+	Count   int // lanes that count
+	Density []float64
+	Current []float64
+}
+
+// Conserved is what a trajectory kept.
+type Conserved struct {
+	NormDrift   float64 // relative change of ∫|ψ|²
+	EnergyDrift float64 // (change of energy − work done by the landscape) per atom, in m c₀²
+}
+
+// Sink takes what an ensemble produces. Its methods are called from several
+// goroutines at once, in no fixed order; slices are only valid during a call.
+type Sink interface {
+	// Accept takes a record: Density[j*lanes.Width+l] = |ψ|² and Current alike,
+	// both rounded to Quantum, symmetrically ordered.
+	Accept(r Record) error
+	// Finish takes the end of a batch, after its records.
+	Finish(first int, conserved []Conserved, steps time.Duration)
+}
+
+// Ensemble runs the trajectories of a Problem.
+type Ensemble struct {
+	Problem    *Problem
+	propagator *Propagator
+}
+
+// NewEnsemble prepares the trajectories of p. It returns the errors of
+// NewPropagator.
+func NewEnsemble(p *Problem) (*Ensemble, error) {
+	ordering := make([]float64, p.Grid.N)
+	fill(ordering, p.Commutator())
+	prop, err := NewPropagator(p.Grid, p.Law, p.Landscape, ordering, p.Scheme, p.TimeStep, p.Times)
+	if err != nil {
+		return nil, err
+	}
+	return &Ensemble{Problem: p, propagator: prop}, nil
+}
+
+// Steps returns the time steps of one trajectory.
+func (e *Ensemble) Steps() int { return e.propagator.Steps() }
+
+// DensityError reports a density that no record can hold: the equation has
+// become unstable or the cloud has collapsed.
+type DensityError struct {
+	Trajectory int
+	Time       float64
+	Density    float64
+}
+
+func (e *DensityError) Error() string {
+	return fmt.Sprintf("trajectory %d has density %.3g n₀ at time %.4g ħ/mc²: the time step is too long for this grid, or the potential too deep", e.Trajectory, e.Density, e.Time)
+}
+
+// Run carries the given batches (batch i is trajectories 8i to 8i+7) through
+// all recorded times on the given number of workers, and hands them to sink;
+// of the last batch only trajectories below count do count. A trajectory
+// depends on the seed and its index alone. Run stops early, with ctx's error,
+// after the batches in hand when ctx is cancelled.
+func (e *Ensemble) Run(ctx context.Context, batches []int, count, workers int, sink Sink) error {
+	ctx, cancel := context.WithCancelCause(ctx)
+	defer cancel(nil)
+	queue := make(chan int)
+	go func() {
+		defer close(queue)
+		for _, b := range batches {
+			select {
+			case queue <- b:
+			case <-ctx.Done():
+				return
+			}
+		}
+	}()
+	var wg sync.WaitGroup
+	for range max(1, workers) {
+		wg.Go(func() {
+			w := newWorker(e)
+			for b := range queue {
+				if ctx.Err() != nil {
+					return
+				}
+				if err := w.batch(b*lanes.Width, min(lanes.Width, count-b*lanes.Width), sink); err != nil {
+					cancel(err)
+					return
+				}
+			}
+		})
+	}
+	wg.Wait()
+	if err := context.Cause(ctx); err != nil && !errors.Is(err, context.Canceled) {
+		return err
+	}
+	return ctx.Err()
+}
+
+type worker struct {
+	e                *Ensemble
+	walker           *Walker
+	batchField       *lanes.Batch
+	density, current []float64
+}
+
+func newWorker(e *Ensemble) *worker {
+	n := e.Problem.Grid.N * lanes.Width
+	return &worker{e: e, walker: e.propagator.NewWalker(true), batchField: lanes.NewBatch(e.Problem.Grid.N),
+		density: make([]float64, n), current: make([]float64, n)}
+}
+
+func (w *worker) batch(first, count int, sink Sink) error {
+	p, b := w.e.Problem, w.batchField
+	if err := p.Noise.Sample(b, p.Seed, first); err != nil {
+		return err
+	}
+	w.walker.Reset()
+	norm, energy := w.walker.Norms(b), w.walker.Energies(b, 0)
+	var steps time.Duration
+	for i, t := range p.Times {
+		start := time.Now()
+		w.walker.Leg(b, i)
+		steps += time.Since(start)
+		w.walker.Currents(w.current, b)
+		for j := range w.density {
+			re, im := b.Re[j], b.Im[j]
+			rho := re*re + im*im
+			if !(rho < MaxDensity) {
+				return &DensityError{Trajectory: first + j%lanes.Width, Time: t, Density: rho}
+			}
+			w.density[j] = Quantise(rho)
+			w.current[j] = Quantise(w.current[j])
+		}
+		if err := sink.Accept(Record{Time: i, First: first, Count: count, Density: w.density, Current: w.current}); err != nil {
+			return err
+		}
+	}
+	normAfter, energyAfter := w.walker.Norms(b), w.walker.Energies(b, p.Times[len(p.Times)-1])
+	kept := make([]Conserved, count)
+	for l := range kept {
+		kept[l] = Conserved{
+			NormDrift:   normAfter[l]/norm[l] - 1,
+			EnergyDrift: (energyAfter[l] - energy[l] - w.walker.Work[l]) / p.Ground.Atoms,
+		}
+	}
+	sink.Finish(first, kept, steps)
+	return nil
+}
+
+// Quantise rounds to a multiple of Quantum.
+func Quantise(x float64) float64 { return math.RoundToEven(x/Quantum) * Quantum }
+
+// MeanField carries the ground state itself, without noise, and returns its
+// density and current at each of the given times, each [N].
+func MeanField(p *Problem, times []float64) (density, current [][]float64, err error) {
+	prop, err := NewPropagator(p.Grid, p.Law, p.Landscape, nil, p.Scheme, p.TimeStep, times)
+	if err != nil {
+		return nil, nil, err
+	}
+	w, b := prop.NewWalker(false), lanes.NewBatch(p.Grid.N)
+	for l := range lanes.Width {
+		for j, f := range p.Ground.Field {
+			b.Re[j*lanes.Width+l] = f
+		}
+	}
+	flow := make([]float64, p.Grid.N*lanes.Width)
+	for i := range times {
+		w.Leg(b, i)
+		w.Currents(flow, b)
+		rho, j := make([]float64, p.Grid.N), make([]float64, p.Grid.N)
+		for x := range rho {
+			re, im := b.Re[x*lanes.Width], b.Im[x*lanes.Width]
+			rho[x], j[x] = re*re+im*im, flow[x*lanes.Width]
+		}
+		density, current = append(density, rho), append(current, j)
+	}
+	return density, current, nil
+}
