@@ -1,0 +1,69 @@
+package main
+
+import (
+	"fmt"
+	"os"
+	"time"
+
+	"github.com/vbauerster/mpb/v8"
+	"github.com/vbauerster/mpb/v8/decor"
+	"golang.org/x/term"
+)
+
+// progress shows how far an ensemble is: a bar with the time left on a
+// terminal, a plain line now and then elsewhere. All goes to stderr.
+type progress struct {
+	total, begun int
+	start, last  time.Time
+	pages        *mpb.Progress
+	bar          *mpb.Bar
+}
+
+// every is how often a line is printed where there is no terminal.
+const every = 15 * time.Second
+
+func newProgress(total, begun int) *progress {
+	p := &progress{total: total, begun: begun, start: time.Now(), last: time.Now()}
+	if term.IsTerminal(int(os.Stderr.Fd())) {
+		p.pages = mpb.New(mpb.WithOutput(os.Stderr), mpb.WithWidth(48))
+		p.bar = p.pages.AddBar(int64(total),
+			mpb.PrependDecorators(decor.Name("trajectories "), decor.CountersNoUnit("%d of %d")),
+			mpb.AppendDecorators(decor.Any(func(decor.Statistics) string { return p.left() })))
+		p.bar.SetCurrent(int64(begun))
+	}
+	return p
+}
+
+// left says how much longer it takes.
+func (p *progress) left() string {
+	now := int(p.bar.Current())
+	if now <= p.begun {
+		return "estimating"
+	}
+	return p.estimate(now) + " left"
+}
+
+func (p *progress) estimate(now int) string {
+	perOne := time.Since(p.start) / time.Duration(now-p.begun)
+	return (perOne * time.Duration(p.total-now)).Round(time.Second).String()
+}
+
+// update takes the number of finished trajectories.
+func (p *progress) update(now int) {
+	if p.bar != nil {
+		p.bar.SetCurrent(int64(now))
+		return
+	}
+	if time.Since(p.last) >= every && now < p.total {
+		p.last = time.Now()
+		fmt.Fprintf(os.Stderr, "%d of %d trajectories, %s left\n", now, p.total, p.estimate(now))
+	}
+}
+
+// end takes the bar away.
+func (p *progress) end() {
+	if p.bar != nil {
+		p.bar.Abort(true)
+		p.pages.Wait()
+	}
+}
