@@ -56,7 +56,7 @@ func (r *Run) flowFigure() *figure.Page {
 	lo, hi := r.view()
 	f := figure.Flow{
 		Horizon: 0, Upstream: r.span(a.Window.UpFar, a.Window.UpNear), Downstream: r.span(a.Window.DownNear, a.Window.DownFar),
-		LengthUnit: u.Unit(Length), DensityUnit: u.Unit(Density),
+		LengthUnit: u.Axis(Length), DensityUnit: u.Axis(Density),
 		Density: figure.Points{Name: "ensemble"}, Mach: figure.Points{Name: "ensemble"},
 		PredictedDensity: figure.Curve{Name: "without noise"}, PredictedMach: figure.Curve{Name: "without noise"},
 	}
@@ -81,17 +81,15 @@ func (r *Run) mapFigure() *figure.Page {
 	a, u := r.Account, r.Units
 	lo, hi := r.view()
 	var columns []int
-	f := figure.Map{LengthUnit: u.Unit(Length), WindowX: r.span(a.Window.UpFar, a.Window.UpNear), WindowXPrime: r.span(a.Window.DownNear, a.Window.DownFar)}
+	f := figure.Map{LengthUnit: u.Axis(Length), WindowX: r.span(a.Window.UpFar, a.Window.UpNear), WindowXPrime: r.span(a.Window.DownNear, a.Window.DownFar)}
 	for j, x := range a.Map.X {
 		if x >= lo && x <= hi {
 			columns = append(columns, j)
 		}
 	}
-	// Cells of about half a healing length and more show the band; single grid
-	// points show their own noise.
-	cell := max(1, len(columns)/160)
+	cell := max(1, len(columns)/200)
 	n := len(columns) / cell
-	f.Value = make([]float64, n*n)
+	values := make([]float64, n*n)
 	for i := range n {
 		f.Position = append(f.Position, u.Value((a.Map.X[columns[i*cell]]+a.Map.X[columns[i*cell+cell-1]])/2, Length))
 		for j := range n {
@@ -101,15 +99,57 @@ func (r *Run) mapFigure() *figure.Page {
 					sum += a.Map.G2.At(p, q)
 				}
 			}
-			f.Value[i*n+j] = sum / float64(cell*cell)
+			values[i*n+j] = sum / float64(cell*cell)
 		}
 	}
-	f.Limit = figure.OffDiagonalLimit(f.Value, n, 4, 0.995)
+	// Single points show their own noise: smoothing over a healing length or so
+	// shows the band, which is wider.
+	f.Value = smooth(values, n, mapSmoothing/(float64(cell)*r.Problem.Grid.Dx))
+	f.Limit = figure.OffDiagonalLimit(f.Value, n, int(8*mapSmoothing/(float64(cell)*r.Problem.Grid.Dx)), 0.98)
 	g := a.Predicted.Geometry()
-	f.Band = figure.Curve{Name: "predicted band",
+	f.Band = figure.Curve{Name: fmt.Sprintf("predicted band; map smoothed, σ = %.2g %s", u.Value(mapSmoothing, Length), u.Axis(Length)),
 		X: []float64{0, u.Value(a.Window.UpFar*1.5, Length)},
 		Y: []float64{0, u.Value(a.Window.UpFar*1.5*g.Slope(), Length)}}
 	return f.Page()
+}
+
+// mapSmoothing is the standard deviation, in ξ, of the Gaussian with which the
+// map is smoothed in its figure (not in the numbers).
+const mapSmoothing = 1.2
+
+// smooth returns an n×n map smoothed by a Gaussian of sigma cells; NaN cells
+// stay NaN and do not count.
+func smooth(v []float64, n int, sigma float64) []float64 {
+	reach := int(3*sigma) + 1
+	kernel := make([]float64, 2*reach+1)
+	for k := range kernel {
+		d := float64(k-reach) / sigma
+		kernel[k] = math.Exp(-d * d / 2)
+	}
+	along := func(dst, src []float64, next, line int) {
+		for a := range n {
+			for b := range n {
+				sum, weight := 0.0, 0.0
+				for k, w := range kernel {
+					if c := b + k - reach; c >= 0 && c < n {
+						if x := src[a*line+c*next]; !math.IsNaN(x) {
+							sum += w * x
+							weight += w
+						}
+					}
+				}
+				at := a*line + b*next
+				dst[at] = sum / weight
+				if math.IsNaN(src[at]) {
+					dst[at] = math.NaN()
+				}
+			}
+		}
+	}
+	once, twice := make([]float64, n*n), make([]float64, n*n)
+	along(once, v, 1, n)
+	along(twice, once, n, 1)
+	return twice
 }
 
 func (r *Run) cutFigure() *figure.Page {
@@ -120,7 +160,7 @@ func (r *Run) cutFigure() *figure.Page {
 	// The delay s is shown as a distance at the upstream partner's speed.
 	up := a.Predicted.Geometry().Up
 	place := func(s float64) float64 { return u.Value(s*up, Length) }
-	f := figure.Cut{Across: "distance across the band, upstream", Unit: u.Unit(Length), Measured: figure.Points{Name: fmt.Sprintf("%d trajectories", a.Trajectories)}}
+	f := figure.Cut{Across: "distance across the band, upstream", Unit: u.Axis(Length), Measured: figure.Points{Name: fmt.Sprintf("%d trajectories", a.Trajectories)}}
 	for b, s := range a.Cut.S {
 		f.Measured.X = append(f.Measured.X, place(s))
 		f.Measured.Y = append(f.Measured.Y, a.Cut.Mean[b])
@@ -150,16 +190,26 @@ func (r *Run) spaceTimeFigure() *figure.Page {
 	if len(s.Time) == 0 {
 		return nil
 	}
-	f := figure.SpaceTime{Position: u.Values(s.X, Length), Time: u.Values(s.Time, Time),
-		LengthUnit: u.Unit(Length), TimeUnit: u.Unit(Time), DensityUnit: u.Unit(Density)}
+	// Up to a little past the window: farther out the tail of the outflow
+	// comes to the end of the grid.
+	_, reach := r.view()
+	end := len(s.X)
+	if s.Step != nil {
+		reach += s.Step[len(s.Step)-1]
+		for end > 1 && s.X[end-1] > reach {
+			end--
+		}
+	}
+	f := figure.SpaceTime{Position: u.Values(s.X[:end], Length), Time: u.Values(s.Time, Time),
+		LengthUnit: u.Axis(Length), TimeUnit: u.Axis(Time), DensityUnit: u.Axis(Density)}
 	for _, row := range s.Density {
-		f.Density = append(f.Density, u.Values(row, Density)...)
+		f.Density = append(f.Density, u.Values(row[:end], Density)...)
 	}
 	if s.Step != nil {
 		f.Step = figure.Curve{Name: "step", X: u.Values(s.Step, Length), Y: f.Time}
 	}
 	if s.Wave != nil {
-		f.Characteristics = []figure.Curve{{Name: "front of the wave, at c₀", X: u.Values(s.Wave, Length), Y: f.Time}}
+		f.Characteristics = []figure.Curve{{Name: "front of the wave, at *c*_{0}", X: u.Values(s.Wave, Length), Y: f.Time}}
 	}
 	return f.Page()
 }

@@ -6,6 +6,7 @@ package report
 import (
 	"encoding/json"
 	"math"
+	"strings"
 
 	"tailrace/gpe/lab"
 )
@@ -71,6 +72,13 @@ func (u Units) Unit(d Dimension) string {
 	}
 	return unitsOf[d].condensate
 }
+
+// Axis returns the name of the unit in the markup of figures.
+func (u Units) Axis(d Dimension) string {
+	return axisMarkup.Replace(u.Unit(d))
+}
+
+var axisMarkup = strings.NewReplacer("⁻¹", "^{−1}", "₀", "_{0}", "k_B", "*k*_{B}")
 
 // Key returns a JSON key: with its unit in lab units, bare in the condensate's.
 func (u Units) Key(name string, d Dimension) string {
