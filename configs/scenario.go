@@ -40,8 +40,8 @@ func (c *Config) Scenario() (*Scenario, error) {
 	case c.Sweep():
 		return c.swept()
 	}
-	return nil, c.Fault("flow.kind", "", `"uniform", or a [trap], [cloud] and [step]`,
-		"an ensemble needs a cloud in a trap through which the step is swept, or a uniform flow on a ring")
+	return nil, c.Fault("flow.kind", "", "there is no ensemble of this flow",
+		`give kind = "uniform", or a [trap], a [cloud] and a [step] that is swept through it`)
 }
 
 // sizes is the lengths of a scenario in condensate units.
@@ -161,8 +161,8 @@ func (s *Scenario) cloud(z sizes, law fluid.Law) (*gpe.Problem, error) {
 	}
 	start := trap.RightEdge() + z.start
 	if last := start - z.speed*end; last < -halfCloud {
-		return nil, c.Fault("record.times", "", fmt.Sprintf("at most %s", s.duration((start+halfCloud)/z.speed)),
-			"the step has left the far end of the cloud by then; record earlier, sweep more slowly or use a longer cloud")
+		return nil, c.Fault("record.times", "", fmt.Sprintf("at most %s is allowed, when the step reaches the far end of the cloud", s.duration((start+halfCloud)/z.speed)),
+			"record earlier, sweep more slowly or use a longer cloud")
 	}
 	if right := grid.X(grid.N - 1); start > right || start < grid.Origin {
 		return nil, c.Fault("step.start", "", "a place on the grid", "start the step at the edge of the cloud, start = 0")
@@ -187,8 +187,8 @@ func (s *Scenario) cloud(z sizes, law fluid.Law) (*gpe.Problem, error) {
 const (
 	coarse    = 0.36
 	perWidth  = 0.7
-	stepShare = 0.6  // of the longest stable time step
-	longStep  = 0.05 // ħ/mc²: keeps the energy to 10⁻² m c² an atom
+	stepShare = 0.6 // of the longest stable time step
+	longStep  = 0.1 // ħ/mc²: keeps the energy to 10⁻² m c² an atom
 )
 
 func (s *Scenario) grid(z sizes, halfCloud, margin, end float64) (gpe.Grid, error) {
@@ -205,8 +205,8 @@ func (s *Scenario) grid(z sizes, halfCloud, margin, end float64) (gpe.Grid, erro
 		length = 2*halfCloud + 2*margin + outflow
 	}
 	if need := 2*halfCloud + 12; length < need {
-		return gpe.Grid{}, c.Fault("grid.length", "", fmt.Sprintf("at least %s", s.distance(need)),
-			"the cloud and its walls must fit the grid, and what the step lets out needs room beside them")
+		return gpe.Grid{}, c.Fault("grid.length", "", fmt.Sprintf("at least %s is needed for the cloud and its walls, and more for what the step lets out", s.distance(need)),
+			"use a longer grid or leave its length out")
 	}
 	points := c.Grid.Points
 	if points == 0 {
@@ -216,21 +216,34 @@ func (s *Scenario) grid(z sizes, halfCloud, margin, end float64) (gpe.Grid, erro
 		}
 		points = goodLength(int(math.Ceil(length / dx)))
 	}
-	if _, err := lanes.NewPlan(points); err != nil {
-		return gpe.Grid{}, c.Fault("grid.points", "", "2^a, 3·2^a or 5·2^a", err.Error())
+	if err := c.points(points); err != nil {
+		return gpe.Grid{}, err
 	}
 	g := gpe.NewGrid(points, length, left)
 	if z.width < g.Dx/2 {
-		return gpe.Grid{}, c.Fault("grid.points", fmt.Sprint(points), fmt.Sprintf("at least %d", goodLength(int(math.Ceil(length/(2*z.width))))),
-			fmt.Sprintf("the step's width is %.2g of a grid spacing and would not be seen", z.width/g.Dx))
+		return gpe.Grid{}, c.Fault("grid.points", fmt.Sprint(points), fmt.Sprintf("the step's width is %.2g of a grid spacing and would not be seen", z.width/g.Dx),
+			fmt.Sprintf("use at least %d points", goodLength(int(math.Ceil(length/(2*z.width))))))
 	}
 	// The outflow and the vacuum waves that meet the step must be waves of the
 	// grid.
 	if fast := math.Sqrt(2*(z.depth+1)) + z.speed; fast > g.MaxWavenumber()/2 {
-		return gpe.Grid{}, c.Fault("step.speed", "", fmt.Sprintf("speed and depth for which the fluid stays below %s", s.velocity(g.MaxWavenumber()/2)),
-			"the grid cannot carry so fast a fluid: more grid.points, a slower or a shallower step")
+		return gpe.Grid{}, c.Fault("step.speed", "", fmt.Sprintf("with this depth the fluid reaches %s, and the grid carries at most %s", s.velocity(fast), s.velocity(g.MaxWavenumber()/2)),
+			"use more grid.points, or a slower or shallower step")
 	}
 	return g, nil
+}
+
+// points refuses a number of grid points that no transform has.
+func (c *Config) points(n int) error {
+	_, err := lanes.NewPlan(n)
+	var length *lanes.LengthError
+	switch {
+	case err == nil:
+		return nil
+	case errors.As(err, &length) && length.Below > 0 && length.Above > 0:
+		return c.Fault("grid.points", "", "it must be 2^a, 3·2^a or 5·2^a", fmt.Sprintf("the nearest are %d and %d", length.Below, length.Above))
+	}
+	return c.Fault("grid.points", "", "it must be 2^a, 3·2^a or 5·2^a", err.Error())
 }
 
 // goodLength returns the smallest length of at least n points that the
@@ -256,8 +269,8 @@ func (s *Scenario) timeStep() error {
 		p.TimeStep = math.Min(stepShare*limit, longStep)
 	}
 	if p.TimeStep > limit {
-		return s.Config.Fault("grid.time_step", "", fmt.Sprintf("at most %s", s.duration(limit)),
-			(&gpe.TimeStepError{Step: p.TimeStep, Limit: limit}).Error())
+		return s.Config.Fault("grid.time_step", "", fmt.Sprintf("at most %s is stable on this grid", s.duration(limit)),
+			"beyond it waves of the grid grow out of nothing: use a shorter step, or fewer grid points")
 	}
 	return nil
 }
@@ -290,12 +303,12 @@ func (c *Config) ring() (*Scenario, error) {
 	if points == 0 {
 		points = goodLength(int(math.Ceil(length * 2)))
 	}
-	if _, err := lanes.NewPlan(points); err != nil {
-		return nil, c.Fault("grid.points", "", "2^a, 3·2^a or 5·2^a", err.Error())
+	if err := c.points(points); err != nil {
+		return nil, err
 	}
 	g := gpe.NewGrid(points, length, -length/2)
 	if v > g.MaxWavenumber()/4 {
-		return nil, c.Fault("flow.velocity", "", fmt.Sprintf("at most %s", s.velocity(g.MaxWavenumber()/4)), "the grid cannot carry so fast a fluid: more grid.points")
+		return nil, c.Fault("flow.velocity", "", fmt.Sprintf("the grid carries a fluid of at most %s", s.velocity(g.MaxWavenumber()/4)), "use more grid.points or a shorter ring")
 	}
 	land := gpe.NewSwitch(g, gpe.Switch{Velocity: v, SoundUp: up, SoundDown: down, Width: width, Ramp: z.ramp})
 	s.Switch = land
@@ -324,8 +337,8 @@ func (s *Scenario) finish() error {
 	}
 	modes := p.Commutator() * p.AtomsPerLength * p.Grid.Length()
 	if modes > p.Atoms() {
-		return c.Fault("grid.points", "", fmt.Sprintf("fewer noise modes (%.0f) than atoms (%.0f)", modes, p.Atoms()),
-			"the truncated Wigner method needs far more atoms than modes: fewer grid points, a shorter grid, a lower ensemble.noise_cutoff or more atoms")
+		return c.Fault("grid.points", "", fmt.Sprintf("it makes %.0f noise modes for %.0f atoms, and the truncated Wigner method needs far more atoms than modes", modes, p.Atoms()),
+			"use fewer grid points, a shorter grid, a lower ensemble.noise_cutoff or more atoms")
 	}
 	s.Checks = append(s.Checks, lab.Check{
 		Name: "noise modes", Value: modes / 2 / p.Atoms(), Limit: 0.15,
@@ -361,7 +374,7 @@ func (s *Scenario) Predicted() (flow.Profile, error) {
 	}
 	t, err := flow.Sweep(s.Problem.Law, s.Sweep.Speed, s.Sweep.Depth, s.Sweep.Width)
 	if err != nil {
-		return nil, s.Config.Fault("step.speed", "", "a speed, depth and width that make a horizon", err.Error())
+		return nil, s.Config.Fault("step.speed", "", "there is no horizon at this speed, depth and width", err.Error())
 	}
 	return t, nil
 }

@@ -106,6 +106,8 @@ func Draw(in Input) (*Account, error) {
 	a.SechHeight = bogoliubov.SechAmplitude(a.Predicted.Horizon.SurfaceGravity, a.Predicted.Upstream, a.Predicted.Downstream, p.AtomsPerLength)
 	a.Window = band.AgedWindow(geometry, in.Frame.Age, in.Settings.Near, in.Settings.Fraction)
 
+	a.clip()
+
 	x := make([]float64, p.Grid.N)
 	for j := range x {
 		x[j] = a.MeanField.X[j] - a.MeanField.Horizon.Position
@@ -139,6 +141,34 @@ func (a *Account) predict(in Input) error {
 	}
 	a.Predicted.Upstream, a.Predicted.Downstream, a.Predicted.Horizon = profile.Ends()
 	return nil
+}
+
+// even is how far the mean field's density may depart from that beside the
+// horizon before the window ends: the band's speeds hold only where the flow is
+// about uniform. In a box it never does before the band's own end.
+const even = 0.3
+
+// clip ends the window where the flow stops being about uniform.
+func (a *Account) clip() {
+	h := a.MeanField.Horizon.Position
+	w := &a.Window
+	bound := func(side string, from, to, step float64) float64 {
+		beside := a.MeanField.state(h+math.Min(from, from+step), h+math.Max(from, from+step)).Density
+		reach := to
+		for j, x := range a.MeanField.X {
+			x -= h
+			inside := x > math.Min(from, to) && x < math.Max(from, to)
+			if inside && math.Abs(a.MeanField.Density[j]/beside-1) > even && math.Abs(x) < math.Abs(reach) {
+				reach = x
+			}
+		}
+		if reach != to {
+			a.warn("the %s window ends at %.3g ξ instead of %.3g: farther out the density departs by more than %.0f %% from that beside the horizon", side, reach, to, 100*even)
+		}
+		return reach
+	}
+	w.UpFar = bound("upstream", w.UpNear, w.UpFar, -4)
+	w.DownFar = bound("downstream", w.DownNear, w.DownFar, 4)
 }
 
 // ordering is the normal ordering of p's noise. With a cut-off the commutator

@@ -9,7 +9,6 @@ package horizon
 import (
 	"fmt"
 	"math"
-	"math/cmplx"
 
 	"gonum.org/v1/gonum/dsp/fourier"
 
@@ -47,7 +46,7 @@ type Profile struct {
 
 // NewProfile makes the flow's profile from density and current in the grid's
 // frame and finds the horizon: the crossing v = c nearest to the step at which
-// v − c rises. κ = d(v−c)/dx there, from spectral derivatives. It returns
+// v − c rises. κ = d(v−c)/dx there, from the field's Fourier series. It returns
 // *NoHorizonError when there is none within 15 ξ.
 func NewProfile(p *gpe.Problem, f Frame, density, current []float64, time float64) (*Profile, error) {
 	g := p.Grid
@@ -75,34 +74,59 @@ func NewProfile(p *gpe.Problem, f Frame, density, current []float64, time float6
 	if best < 0 {
 		return nil, &NoHorizonError{Mach: mach}
 	}
-	dn, dj, dg := derivative(g, density), derivative(g, current), derivative(g, coupling)
-	gradient := func(j int) float64 {
-		n, c := density[j], pr.SoundSpeed[j]
-		dv := dj[j]/n - current[j]*dn[j]/(n*n)
-		dc := math.Sqrt(coupling[j])*p.Law.SoundSlope(n)*dn[j] + c*dg[j]/(2*coupling[j])
-		return dv - dc
+	n, flux, g2 := newSeries(g, density), newSeries(g, current), newSeries(g, coupling)
+	// excess is v − c and its slope between points, where all is analytic.
+	excess := func(x float64) (value, slope float64) {
+		n, dn := n.at(x)
+		j, dj := flux.at(x)
+		k, dk := g2.at(x)
+		c := math.Sqrt(k) * p.Law.SoundSpeed(n)
+		dc := math.Sqrt(k)*p.Law.SoundSlope(n)*dn + c*dk/(2*k)
+		return j/n + f.Speed - c, dj/n - j*dn/(n*n) - dc
 	}
-	a, b := pr.excess(best-1), pr.excess(best)
-	w := a / (a - b)
-	x := pr.X[best-1] + w*g.Dx
-	kappa := (1-w)*gradient(best-1) + w*gradient(best)
-	pr.Horizon = flow.Horizon{Position: x, SurfaceGravity: kappa, Temperature: kappa / (2 * math.Pi)}
+	lo, hi := pr.X[best-1]+f.Position, pr.X[best]+f.Position
+	for range 60 {
+		middle := (lo + hi) / 2
+		if v, _ := excess(middle); v < 0 {
+			lo = middle
+		} else {
+			hi = middle
+		}
+	}
+	_, kappa := excess(lo)
+	pr.Horizon = flow.Horizon{Position: lo - f.Position, SurfaceGravity: kappa, Temperature: kappa / (2 * math.Pi)}
 	return pr, nil
 }
 
 func (p *Profile) excess(j int) float64 { return p.Velocity[j] - p.SoundSpeed[j] }
 
-// derivative is the spectral derivative of a real field on a periodic grid.
-func derivative(g gpe.Grid, f []float64) []float64 {
-	fft := fourier.NewFFT(g.N)
-	c := fft.Coefficients(nil, f)
-	for q := range c {
-		c[q] *= complex(0, g.Wavenumber(q)/float64(g.N))
-		if cmplx.IsNaN(c[q]) || 2*q == g.N {
-			c[q] = 0
+// series is a real field as the Fourier series of its grid.
+type series struct {
+	origin float64
+	k      []float64
+	c      []complex128
+}
+
+func newSeries(g gpe.Grid, f []float64) series {
+	s := series{origin: g.Origin, c: fourier.NewFFT(g.N).Coefficients(nil, f), k: make([]float64, g.N/2+1)}
+	for q := range s.c {
+		s.k[q] = 2 * math.Pi * float64(q) / g.Length()
+		s.c[q] *= complex(2/float64(g.N), 0) // both signs of k
+		if q == 0 || 2*q == g.N {
+			s.c[q] /= 2
 		}
 	}
-	return fft.Sequence(nil, c)
+	return s
+}
+
+// at returns the field and its slope at any x.
+func (s series) at(x float64) (value, slope float64) {
+	for q, c := range s.c {
+		sin, cos := math.Sincos(s.k[q] * (x - s.origin))
+		value += real(c)*cos - imag(c)*sin
+		slope -= s.k[q] * (real(c)*sin + imag(c)*cos)
+	}
+	return value, slope
 }
 
 // state is the mean of the profile over lo < x < hi, from the step.

@@ -6,6 +6,7 @@ import (
 	"time"
 
 	"tailrace/analysis/horizon"
+	"tailrace/analysis/temperature"
 	"tailrace/gpe"
 	"tailrace/gpe/flow"
 	"tailrace/gpe/lab"
@@ -84,7 +85,7 @@ func (r *Run) Result() any {
 	o.set("measured_flow", r.flow(a.Measured))
 	o.with(r.Units, "omega_max", a.OmegaMax, Rate)
 	o.set("band", r.band())
-	var temperatures []object
+	temperatures := []object{} // an empty list, not null
 	for _, t := range a.Readings {
 		var v object
 		v.set("method", t.Method)
@@ -100,7 +101,7 @@ func (r *Run) Result() any {
 	kept.set("atoms_relative", number(r.Conserved.NormDrift))
 	kept.with(r.Units, "energy_per_atom_over_kB", r.Conserved.EnergyDrift, Temperature)
 	o.set("conservation", kept)
-	o.set("checks", r.Checks)
+	o.set("checks", append([]lab.Check{}, r.Checks...))
 	o.set("warnings", append([]string{}, r.Warnings...))
 	return o
 }
@@ -109,31 +110,42 @@ func (r *Run) band() object {
 	a := r.Account
 	g := a.Predicted.Geometry()
 	var o object
-	if w := a.Width; w != nil {
-		o.set("amplitude", number(w.Amplitude))
-		if w.Covariance != nil {
-			o.set("amplitude_error", number(math.Sqrt(w.Covariance.At(0, 0))))
-		}
-		o.with(r.Units, "delay", w.Delay, Time)
-		o.set("offset", number(w.Offset))
-		o.set("chi_square", number(w.ChiSquare))
-		o.set("degrees_of_freedom", w.DegreesOfFreedom)
+	// What could not be fitted is null: the keys are always there.
+	w := a.Width
+	if w == nil {
+		nan := math.NaN()
+		w = &temperature.Width{Amplitude: nan, Delay: nan, Offset: nan, ChiSquare: nan}
 	}
+	amplitudeError := math.NaN()
+	if w.Covariance != nil {
+		amplitudeError = math.Sqrt(w.Covariance.At(0, 0))
+	}
+	o.set("amplitude", number(w.Amplitude))
+	o.set("amplitude_error", number(amplitudeError))
+	o.with(r.Units, "delay", w.Delay, Time)
+	o.set("offset", number(w.Offset))
+	o.set("chi_square", number(w.ChiSquare))
+	o.set("degrees_of_freedom", w.DegreesOfFreedom)
 	o.set("amplitude_predicted_without_dispersion", number(a.SechHeight))
+	slope, slopeError := math.NaN(), math.NaN()
 	if l := a.Line; l != nil {
-		o.set("slope", number(l.Slope))
-		o.set("slope_error", number(l.SlopeError))
+		slope = l.Slope
+		if l.SlopeError > 0 {
+			slopeError = l.SlopeError
+		}
 	}
+	o.set("slope", number(slope))
+	o.set("slope_error", number(slopeError))
 	o.set("slope_predicted", number(g.Slope()))
 	o.set("significance", number(a.Null.Significance))
 	o.set("p_value", number(a.Null.PValue))
 	o.set("strength_over_predicted", number(a.Null.Strength))
-	var w object
-	w.with(r.Units, "upstream_far", a.Window.UpFar, Length)
-	w.with(r.Units, "upstream_near", a.Window.UpNear, Length)
-	w.with(r.Units, "downstream_near", a.Window.DownNear, Length)
-	w.with(r.Units, "downstream_far", a.Window.DownFar, Length)
-	o.set("window", w)
+	var window object
+	window.with(r.Units, "upstream_far", a.Window.UpFar, Length)
+	window.with(r.Units, "upstream_near", a.Window.UpNear, Length)
+	window.with(r.Units, "downstream_near", a.Window.DownNear, Length)
+	window.with(r.Units, "downstream_far", a.Window.DownFar, Length)
+	o.set("window", window)
 	return o
 }
 

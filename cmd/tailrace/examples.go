@@ -13,7 +13,12 @@ func examplesCommand() *cobra.Command {
 	return &cobra.Command{
 		Use:   "examples [NAME]",
 		Short: "list the scenarios that come with the program, or print one to start from",
-		Args:  cobra.MaximumNArgs(1),
+		Args: func(_ *cobra.Command, args []string) error {
+			if len(args) > 1 {
+				return &usageError{fmt.Errorf("at most one example is expected, %d were given", len(args))}
+			}
+			return nil
+		},
 		RunE: func(_ *cobra.Command, args []string) error {
 			if len(args) == 1 {
 				c, err := configs.Load(args[0])

@@ -37,6 +37,13 @@ func run() int {
 		Version:       version,
 		SilenceErrors: true,
 		SilenceUsage:  true,
+		Args: func(_ *cobra.Command, args []string) error {
+			if len(args) == 0 {
+				return nil
+			}
+			return &usageError{fmt.Errorf("there is no command %q; tailrace --help lists what there is", args[0])}
+		},
+		RunE: func(c *cobra.Command, _ []string) error { return c.Help() },
 	}
 	root.CompletionOptions.DisableDefaultCmd = true
 	root.SetFlagErrorFunc(func(c *cobra.Command, err error) error {

@@ -176,7 +176,10 @@ func takeUp(f *folder.Folder, config *configs.Config, store *moments.Store) erro
 	if before.Config != string(config.Text) {
 		return &folder.UseError{Path: f.Path, Why: "the run in it is of another config", Hint: "give the config it began with, which its run.json holds, or choose another --folder"}
 	}
-	return store.Load(f.File("partial.npz"))
+	if err := store.Load(f.File("partial.npz")); err != nil {
+		return &folder.UseError{Path: f.Path, Why: "what the stopped run left cannot be read: " + err.Error(), Hint: "start it anew in another --folder"}
+	}
+	return nil
 }
 
 // writeMoments sums up every recorded time and returns the last sums.
