@@ -42,7 +42,7 @@ func TestExamplesScale(t *testing.T) {
 		temperature               float64
 	}{
 		{"quay", 49.3, 0.41, 1, 0.5, 0.5, 110, 0.03},
-		{"harbour", 43.6, 0.49, 1, 0.52, 0.39, 207, 0.0165},
+		{"harbour", 43.6, 0.49, 1, 0.52, 0.80, 112, 0.0165},
 		{"basin", 97, 0.60, 0.97, 0.5, 0.49, 114, 0.0172},
 	} {
 		t.Run(e.name, func(t *testing.T) {

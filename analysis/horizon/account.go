@@ -253,13 +253,37 @@ func (a *Account) searchBand(sides *band.Sides, g band.Geometry, in Input) {
 // a third of the interval a good run reaches.
 const (
 	significant = 5
-	fairWidth   = 0.1 // bias of the width fit on the predicted band
-	fairTop     = 0.5 // T_H/ω_max beyond which a thermal spectrum is cut off
+	fairWidth   = 0.1  // bias of the width fit on the predicted band
+	fairTop     = 0.5  // T_H/ω_max beyond which a thermal spectrum is cut off
+	fairFlow    = 0.03 // how far densities and velocities may be from the theory's
 )
+
+// offFlow says how the flow in the windows differs from the one on which the
+// reading of the band rests, or nothing.
+func (a *Account) offFlow(in Input) string {
+	if in.Predicted == nil {
+		return "along a harmonic cloud density, speeds and temperature change while the band is made, and it is read as if they did not"
+	}
+	for _, p := range []struct {
+		what             string
+		measured, theory float64
+	}{
+		{"density upstream", a.Measured.Upstream.Density, a.Predicted.Upstream.Density},
+		{"velocity upstream", a.Measured.Upstream.Velocity, a.Predicted.Upstream.Velocity},
+		{"density downstream", a.Measured.Downstream.Density, a.Predicted.Downstream.Density},
+		{"velocity downstream", a.Measured.Downstream.Velocity, a.Predicted.Downstream.Velocity},
+	} {
+		if off := p.measured/p.theory - 1; !(math.Abs(off) <= fairFlow) {
+			return fmt.Sprintf("the %s is %.1f %% from the theory's, and the band's speeds with it", p.what, 100*off)
+		}
+	}
+	return ""
+}
 
 // judge turns fits into readings and says which to trust.
 func (a *Account) judge(in Input) {
 	seen := a.Null.Significance >= significant
+	off := a.offFlow(in)
 	weak := fmt.Sprintf("the band stands out by %.1f standard deviations only, %d are asked for", a.Null.Significance, significant)
 	if !seen {
 		a.warn("%s: about %.0f trajectories would do", weak, math.Ceil(float64(a.Trajectories)*math.Pow(significant/math.Max(a.Null.Significance, 0.5), 2)/100)*100)
@@ -274,6 +298,8 @@ func (a *Account) judge(in Input) {
 			r.Why = fmt.Sprintf("dispersion spreads the band on its way: a width fit to the predicted band in this window reads %.2f of its temperature", a.WidthBias)
 		case !seen:
 			r.Why = weak
+		case off != "":
+			r.Why = off
 		default:
 			r.Trusted, r.Why = true, fmt.Sprintf("a width fit to the predicted band in this window reads %.2f of its temperature", a.WidthBias)
 		}
@@ -286,6 +312,8 @@ func (a *Account) judge(in Input) {
 		switch {
 		case !seen:
 			r.Why = weak
+		case off != "":
+			r.Why = off
 		case ratio > fairTop:
 			r.Why = fmt.Sprintf("T_H is %.2f of ω_max: so much of the thermal spectrum is cut off that its temperature is not defined", ratio)
 		case math.IsNaN(r.Low):

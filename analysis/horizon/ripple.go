@@ -3,6 +3,7 @@ package horizon
 import (
 	"fmt"
 
+	"gonum.org/v1/gonum/mat"
 	"gonum.org/v1/gonum/stat"
 )
 
@@ -11,7 +12,7 @@ import (
 // for a correlation when the step's position jitters.
 type Ripple struct {
 	Side     string
-	Relative float64 // rms about a straight line, over the mean density
+	Relative float64 // rms about a parabola, over the mean density
 	Dips     int     // dark solitons: narrow minima more than a fifth deep
 }
 
@@ -34,11 +35,7 @@ func (p *Profile) ripple(side string, lo, hi float64) Ripple {
 	if len(x) < 4 {
 		return r
 	}
-	a, b := stat.LinearRegression(x, n, nil, false)
-	rest := make([]float64, len(n))
-	for i := range n {
-		rest[i] = n[i] - a - b*x[i]
-	}
+	rest := aboutParabola(x, n)
 	mean := stat.Mean(n, nil)
 	r.Relative = stat.StdDev(rest, nil) / mean
 	for i := 1; i+1 < len(rest); i++ {
@@ -59,4 +56,26 @@ func (r Ripple) Warning(cure string) string {
 		return fmt.Sprintf("the mean density in the %s window ripples by %.1f %% rms (at most %.0f %% is clean): %s", r.Side, 100*r.Relative, 100*rippleLimit, cure)
 	}
 	return ""
+}
+
+// aboutParabola returns what is left of n(x) when its least-squares parabola,
+// the slow change along a trap, is taken out.
+func aboutParabola(x, n []float64) []float64 {
+	middle, half := (x[0]+x[len(x)-1])/2, (x[len(x)-1]-x[0])/2
+	design := mat.NewDense(len(x), 3, nil)
+	for i, v := range x {
+		u := (v - middle) / half
+		design.SetRow(i, []float64{1, u, u * u})
+	}
+	data := mat.NewVecDense(len(n), n)
+	var p, fitted mat.VecDense
+	if err := p.SolveVec(design, data); err != nil {
+		panic("horizon: a parabola through distinct points: " + err.Error())
+	}
+	fitted.MulVec(design, &p)
+	rest := make([]float64, len(n))
+	for i := range rest {
+		rest[i] = n[i] - fitted.AtVec(i)
+	}
+	return rest
 }

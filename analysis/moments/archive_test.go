@@ -92,19 +92,19 @@ func TestArchiveMergeRefused(t *testing.T) {
 		want string
 	}{
 		{"the same trajectories", func() *Archive { return archive(t, e, 10, 30) },
-			"moments of different grids cannot be added: both hold trajectory 10"},
+			"the moments cannot be added: both hold trajectory 10"},
 		{"one in common, below", func() *Archive { return archive(t, e, 0, 11) },
-			"moments of different grids cannot be added: both hold trajectory 10"},
+			"the moments cannot be added: both hold trajectory 10"},
 		{"one in common, above", func() *Archive { return archive(t, e, 29, 60) },
-			"moments of different grids cannot be added: both hold trajectory 29"},
+			"the moments cannot be added: both hold trajectory 29"},
 		{"all around", func() *Archive { return archive(t, e, 0, 60) },
-			"moments of different grids cannot be added: both hold trajectory 10"},
+			"the moments cannot be added: both hold trajectory 10"},
 		{"another grid", func() *Archive { return archive(t, other, 40, 60) },
-			"moments of different grids cannot be added: recorded at 40 with 9 points and at 40 with 10"},
+			"the moments cannot be added: recorded at 40 with 9 points and at 40 with 10"},
 		{"another time", func() *Archive { a := archive(t, e, 40, 60); a.Times = []float64{40, 81}; return a },
-			"moments of different grids cannot be added: recorded at 80 with 9 points and at 81 with 9"},
+			"the moments cannot be added: recorded at 80 with 9 points and at 81 with 9"},
 		{"a time less", func() *Archive { a := archive(t, e, 40, 60); a.Times = a.Times[:1]; return a },
-			"moments of different grids cannot be added: 2 recorded times and 1"},
+			"the moments cannot be added: 2 recorded times and 1"},
 	} {
 		t.Run(c.name, func(t *testing.T) {
 			a := archive(t, e, 10, 30)

@@ -12,8 +12,9 @@ import (
 	"tailrace/gpe"
 )
 
-// ErrMismatch means that two sets of sums are not of the same grid.
-var ErrMismatch = errors.New("moments of different grids cannot be added")
+// ErrMismatch means that two sets of sums do not belong together: they are of
+// different grids or times, or hold the same trajectories.
+var ErrMismatch = errors.New("the moments cannot be added")
 
 // Sums are the moments at one recorded time: the number of trajectories, the
 // sum of |ψ|² at each point, and of |ψ|²|ψ′|² at each pair of points, all in

@@ -20,6 +20,9 @@ func horizonInput(s *configs.Scenario, predicted flow.Profile, store *moments.St
 		in.Frame = horizon.Frame{Position: s.Sweep.Position(t), Speed: s.Sweep.Speed, Age: t - s.Sweep.Ramp}
 		in.Step = horizon.Step{Depth: s.Sweep.Depth, Width: s.Sweep.Width}
 		in.Cure = "let the step start at the edge of the cloud (step.start = 0), at once (step.ramp = 0) and at full speed"
+		if s.Config.Trap.Shape == configs.Harmonic {
+			in.Cure += "; in a harmonic trap the outflow turns round after a quarter of the period, so record earlier"
+		}
 	} else {
 		in.Frame = horizon.Frame{Age: t - 4*s.Switch.Ramp}
 		in.Cure = "switch the horizon on more slowly (a longer step.ramp)"
