@@ -165,7 +165,7 @@ func (s *Scenario) cloud(z sizes, law fluid.Law) (*gpe.Problem, error) {
 			"record earlier, sweep more slowly or use a longer cloud")
 	}
 	if right := grid.X(grid.N - 1); start > right || start < grid.Origin {
-		return nil, c.Fault("step.start", "", "a place on the grid", "start the step at the edge of the cloud, start = 0")
+		return nil, c.Fault("step.start", "", "it must be a place on the grid", "start the step at the edge of the cloud, start = 0")
 	}
 	sweep := gpe.NewSweep(grid, gpe.Sweep{Trap: trap, Depth: z.depth, Width: z.width, Speed: z.speed, Start: start, Ramp: z.ramp})
 	v := make([]float64, grid.N)

@@ -4,7 +4,6 @@ import (
 	"math"
 	"path/filepath"
 	"testing"
-	"time"
 
 	"tailrace/gpe/fluid"
 )
@@ -120,22 +119,4 @@ func TestModeCache(t *testing.T) {
 	if _, cached, _ = cache.Modes(ground, 1); cached {
 		t.Error("another cut-off took the modes of the first")
 	}
-}
-
-func TestModesTiming(t *testing.T) {
-	if testing.Short() {
-		t.Skip()
-	}
-	g := NewGrid(1024, 384, -120)
-	box := Box{Length: 200, WallWidth: 1, WallHeight: 6}
-	v := make([]float64, g.N)
-	for j := range v {
-		v[j] = box.At(g.X(j))
-	}
-	start := time.Now()
-	ground, _ := FindGround(g, fluid.Cubic(), v, 1)
-	t.Log(time.Since(start))
-	start = time.Now()
-	FindModes(ground, 0)
-	t.Log(time.Since(start))
 }

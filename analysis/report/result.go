@@ -101,7 +101,11 @@ func (r *Run) Result() any {
 	kept.set("atoms_relative", number(r.Conserved.NormDrift))
 	kept.with(r.Units, "energy_per_atom_over_kB", r.Conserved.EnergyDrift, Temperature)
 	o.set("conservation", kept)
-	o.set("checks", append([]lab.Check{}, r.Checks...))
+	checks := []object{}
+	for _, c := range r.Checks {
+		checks = append(checks, object{{"name", c.Name}, {"value", number(c.Value)}, {"limit", number(c.Limit)}, {"ok", c.OK}, {"why", c.Why}})
+	}
+	o.set("checks", checks)
 	o.set("warnings", append([]string{}, r.Warnings...))
 	return o
 }

@@ -34,7 +34,7 @@ func TestScripts(t *testing.T) {
 			return nil
 		},
 		Cmds: map[string]func(*testscript.TestScript, bool, []string){
-			"onejson": oneJSON, "numpy": numpy, "appears": appears, "keys": keys,
+			"onejson": oneJSON, "numpy": numpy, "appears": appears, "keys": keys, "shorten": shorten,
 		},
 	})
 }
@@ -87,6 +87,14 @@ func appears(ts *testscript.TestScript, _ bool, args []string) {
 		time.Sleep(10 * time.Millisecond)
 	}
 	ts.Fatalf("%s did not appear", name)
+}
+
+// shorten takes the last hundred bytes off a file.
+func shorten(ts *testscript.TestScript, _ bool, args []string) {
+	name := ts.MkAbs(args[0])
+	info, err := os.Stat(name)
+	ts.Check(err)
+	ts.Check(os.Truncate(name, info.Size()-100))
 }
 
 // numpy runs a Python program that is a file of the script, or skips it where
