@@ -154,4 +154,4 @@ times = [60]
 )
 
 // long is ring with enough trajectories to be stopped on the way.
-var long = strings.Replace(ring, "trajectories = 60", "trajectories = 400", 1)
+var long = strings.Replace(ring, "trajectories = 60", "trajectories = 240", 1)
