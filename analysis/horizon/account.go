@@ -3,9 +3,6 @@ package horizon
 import (
 	"fmt"
 	"math"
-	"slices"
-
-	"gonum.org/v1/gonum/stat"
 
 	"tailrace/analysis/band"
 	"tailrace/analysis/correlation"
@@ -328,47 +325,4 @@ func (a *Account) judge(in Input) {
 			a.Warnings = append(a.Warnings, w)
 		}
 	}
-}
-
-// WindowMean returns the mean and the standard error over shots of the density
-// in lo < x < hi of the map's positions, normally ordered.
-func (a *Account) WindowMean(shots moments.Shots, commutator, lo, hi float64) (mean, err float64) {
-	var columns []int
-	for j, x := range a.Map.X {
-		if lo < x && x < hi {
-			columns = append(columns, j)
-		}
-	}
-	v := make([]float64, shots.Count())
-	for i := range v {
-		for _, j := range columns {
-			v[i] += float64(shots.Shot(i)[j])
-		}
-		v[i] = v[i]/float64(len(columns)) - commutator/2
-	}
-	m, sd := stat.MeanStdDev(v, nil)
-	return m, sd / math.Sqrt(float64(len(v)))
-}
-
-// Robust returns the q-quantile of |g₂−1| off the diagonal, inside |x| < reach:
-// the colour limit of a figure.
-func (a *Account) Robust(q, reach float64) float64 {
-	var v []float64
-	for i, x := range a.Map.X {
-		if math.Abs(x) > reach {
-			continue
-		}
-		for j := i + 4; j < len(a.Map.X); j++ {
-			if math.Abs(a.Map.X[j]) < reach {
-				if g := math.Abs(a.Map.G2.At(i, j)); !math.IsNaN(g) {
-					v = append(v, g)
-				}
-			}
-		}
-	}
-	if len(v) == 0 {
-		return math.NaN()
-	}
-	slices.Sort(v)
-	return stat.Quantile(q, stat.Empirical, v, nil)
 }

@@ -126,14 +126,21 @@ func (o *runOptions) run(ctx context.Context, name string) error {
 	if err != nil {
 		return err
 	}
-	account, err := horizon.Draw(horizonInput(scenario, predicted, store, sums))
+	input := horizonInput(scenario, predicted, store, sums)
+	account, err := horizon.Draw(input)
 	if err != nil {
 		return fmt.Errorf("the ensemble is in %s, but its horizon could not be read: %w", f.Path, err)
+	}
+	checks := append(scenario.Checks, horizon.Checks(p, account)...)
+	if probe, err := probeCutoff(ctx, scenario, cache, account, input, o.workers); err != nil {
+		return err
+	} else if probe != nil {
+		checks = append(checks, probe.Check())
 	}
 	r := &report.Run{Title: config.Title, Config: config.Source, Version: version,
 		Units:   report.Units{Lab: scenario.InLab, Scale: scenario.Scale, PerXi: p.AtomsPerLength},
 		Account: account, Problem: p, Conserved: store.Conserved(), Engine: engine,
-		Checks: append(scenario.Checks, horizon.Checks(p, account)...), Warnings: account.Warnings}
+		Checks: checks, Warnings: account.Warnings}
 	if r.SpaceTime, err = spaceTime(scenario); err != nil {
 		return err
 	}
