@@ -321,6 +321,9 @@ func (c *Config) ring() (*Scenario, error) {
 	return s, s.finish()
 }
 
+// leastModes is the least number of waves that can carry a band at all.
+const leastModes = 32
+
 // finish makes the checks that need the whole problem.
 func (s *Scenario) finish() error {
 	p, c := s.Problem, s.Config
@@ -336,6 +339,10 @@ func (s *Scenario) finish() error {
 		s.Checks = append(s.Checks, r.Checks(length)...)
 	}
 	modes := p.Commutator() * p.AtomsPerLength * p.Grid.Length()
+	if modes < leastModes {
+		return c.Fault("ensemble.noise_cutoff", "", fmt.Sprintf("at least %.2g", leastModes*math.Pi/p.Grid.Length()),
+			fmt.Sprintf("it leaves %.0f waves, too few for any band", modes))
+	}
 	if modes > p.Atoms() {
 		return c.Fault("grid.points", "", fmt.Sprintf("it makes %.0f noise modes for %.0f atoms, and the truncated Wigner method needs far more atoms than modes", modes, p.Atoms()),
 			"use fewer grid points, a shorter grid, a lower ensemble.noise_cutoff or more atoms")

@@ -2,8 +2,11 @@ package gpe
 
 import (
 	"context"
+	"crypto/sha256"
+	"encoding/binary"
 	"errors"
 	"fmt"
+	"io"
 	"math"
 	"sync"
 	"time"
@@ -236,4 +239,31 @@ func MeanField(p *Problem, times []float64) (density, current [][]float64, err e
 		density, current = append(density, rho), append(current, j)
 	}
 	return density, current, nil
+}
+
+// Fingerprint is a hash of all that a trajectory of p depends on but the seed
+// and its index, in 52 bits so that it passes through a float64. It is the same
+// on every machine as long as the ground state is, to rounding: that enters
+// through what it was found from.
+func (p *Problem) Fingerprint() int64 {
+	h := sha256.New()
+	put := func(v ...float64) {
+		for _, f := range v {
+			var b [8]byte
+			binary.LittleEndian.PutUint64(b[:], math.Float64bits(f))
+			h.Write(b[:])
+		}
+	}
+	put(float64(p.Grid.N), p.Grid.Dx, p.Grid.Origin, p.Law.Swelling(), p.AtomsPerLength, p.Temperature, p.Cutoff, p.TimeStep, p.Ground.Mu, p.Landscape.Drift())
+	put(p.Times...)
+	put(p.Ground.V...)
+	table := make([]float64, p.Grid.N)
+	for _, t := range append([]float64{0}, p.Times...) {
+		p.Landscape.Potential(table, t, 1)
+		put(table...)
+		p.Landscape.Coupling(table, t, 1)
+		put(table...)
+	}
+	io.WriteString(h, p.Scheme.Name)
+	return int64(binary.LittleEndian.Uint64(h.Sum(nil)) >> 12)
 }

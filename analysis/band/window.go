@@ -84,6 +84,16 @@ func NewSides(shots moments.Shots, x, mean []float64, w Window) (*Sides, error) 
 	return s, nil
 }
 
+// Check returns the error that NewSides would: whether a window can be used
+// with this mean density.
+func (w Window) Check(x, mean []float64) error {
+	if _, err := columns("upstream", x, mean, w.UpFar, w.UpNear); err != nil {
+		return err
+	}
+	_, err := columns("downstream", x, mean, w.DownNear, w.DownFar)
+	return err
+}
+
 func columns(side string, x, mean []float64, lo, hi float64) ([]int, error) {
 	if lo < x[0] || hi > x[len(x)-1] {
 		return nil, &ErrWindow{side, fmt.Sprintf("it reaches from %.4g to %.4g, the grid from %.4g to %.4g", lo, hi, x[0], x[len(x)-1])}

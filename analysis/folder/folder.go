@@ -138,3 +138,15 @@ func (f *Folder) Remove(name string) error {
 	}
 	return err
 }
+
+// Abandon takes away what Create and a failed run left, so that the folder does
+// not stand in the way of the next try. What else is in it stays.
+func (f *Folder) Abandon() error {
+	if err := f.Remove("run.json"); err != nil {
+		return err
+	}
+	// Both fail where something is left in them, which is then no run's.
+	os.Remove(f.File("figures"))
+	os.Remove(f.Path)
+	return nil
+}

@@ -77,17 +77,20 @@ type Account struct {
 
 	Ripples  []Ripple
 	Warnings []string
+
+	meanCurrent []float64 // of the mean field, in the grid's frame
 }
 
 // PredictedTemperature returns κ/2π of the predicted flow.
 func (a *Account) PredictedTemperature() float64 { return a.Predicted.Horizon.Temperature }
 
-// Draw draws up the account. Its errors are *NoHorizonError, *band.ErrWindow
-// and *flow.NoFlow; a fit that fails is not an error but a warning, and leaves
-// its field nil.
-func Draw(in Input) (*Account, error) {
+// Foresee is the part of an account that needs no ensemble: the noise-free
+// flow, its horizon, the theory, the window. Of the input it needs neither sums
+// nor shots. Its errors say that there will be nothing to analyse:
+// *NoHorizonError, *band.ErrWindow and *flow.NoFlow.
+func Foresee(in Input) (*Account, error) {
 	p := in.Problem
-	a := &Account{Time: in.Time, Trajectories: in.Sums.Count}
+	a := &Account{Time: in.Time}
 	density, current, err := gpe.MeanField(p, []float64{in.Time})
 	if err != nil {
 		return nil, err
@@ -95,22 +98,36 @@ func Draw(in Input) (*Account, error) {
 	if a.MeanField, err = NewProfile(p, in.Frame, density[0], current[0], in.Time); err != nil {
 		return nil, err
 	}
+	a.meanCurrent = current[0]
 	if err := a.predict(in); err != nil {
 		return nil, err
 	}
-	geometry := a.Predicted.Geometry()
 	a.OmegaMax = bogoliubov.MaxFrequency(a.Predicted.Downstream.Velocity, a.Predicted.Downstream.SoundSpeed)
 	a.SechHeight = bogoliubov.SechAmplitude(a.Predicted.Horizon.SurfaceGravity, a.Predicted.Upstream, a.Predicted.Downstream, p.AtomsPerLength)
-	a.Window = band.AgedWindow(geometry, in.Frame.Age, in.Settings.Near, in.Settings.Fraction)
-
+	a.Window = band.AgedWindow(a.Predicted.Geometry(), in.Frame.Age, in.Settings.Near, in.Settings.Fraction)
 	a.clip()
+	return a, a.Window.Check(a.fromHorizon(), a.MeanField.Density)
+}
 
-	x := make([]float64, p.Grid.N)
+// fromHorizon returns the grid's positions from the horizon.
+func (a *Account) fromHorizon() []float64 {
+	x := make([]float64, len(a.MeanField.X))
 	for j := range x {
 		x[j] = a.MeanField.X[j] - a.MeanField.Horizon.Position
 	}
-	a.Map, err = correlation.New(in.Sums, in.Shots, x, ordering(p, density[0], current[0]))
+	return x
+}
+
+// Draw draws up the account. Its errors are those of Foresee; a fit that fails
+// is not an error but a warning, and leaves its field nil.
+func Draw(in Input) (*Account, error) {
+	a, err := Foresee(in)
 	if err != nil {
+		return nil, err
+	}
+	a.Trajectories = in.Sums.Count
+	x := a.fromHorizon()
+	if a.Map, err = correlation.New(in.Sums, in.Shots, x, ordering(in.Problem, a.MeanField.Density, a.meanCurrent)); err != nil {
 		return nil, err
 	}
 	sides, err := band.NewSides(in.Shots, x, a.Map.MeanDensity, a.Window)
@@ -118,7 +135,7 @@ func Draw(in Input) (*Account, error) {
 		return nil, err
 	}
 	a.measure(in)
-	a.searchBand(sides, geometry, in)
+	a.searchBand(sides, a.Predicted.Geometry(), in)
 	a.judge(in)
 	return a, nil
 }

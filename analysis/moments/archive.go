@@ -2,6 +2,7 @@ package moments
 
 import (
 	"fmt"
+	"math"
 
 	"gonum.org/v1/gonum/mat"
 
@@ -14,17 +15,28 @@ type Archive struct {
 	Times   []float64 // ħ/(m c₀²)
 	Sums    []*Sums   // of each time
 	Current [][]float64
-	// First and Count are the ranges of trajectories that are in, so that none
-	// is counted twice.
+	// Problem is the fingerprint of what the trajectories are of (gpe's
+	// Problem.Fingerprint): only those of one problem add.
+	Problem int64
+	// Seed, First and Count are the ranges of trajectories that are in, so that
+	// none is counted twice.
+	Seed         []uint64
 	First, Count []int64
 }
 
-// Arrays returns the archive as numpy arrays: times; first and count; and for
+// Arrays returns the archive as numpy arrays: times; problem;
+// seed (upper and lower 32 bits), first and count; and for
 // each time i density_sum_i [N], product_sum_i [N, N] and current_sum_i [N], in
 // units of n₀, n₀² and n₀c₀, symmetrically ordered.
 func (a *Archive) Arrays() []npz.Array {
+	var halves []int64 // numpy's readers pass through float64, which 64 bits do not
+	for _, seed := range a.Seed {
+		halves = append(halves, int64(seed>>32), int64(seed&math.MaxUint32))
+	}
 	arrays := []npz.Array{
 		npz.Vector("times", a.Times),
+		{Name: "problem", Shape: []int{1}, Data: []int64{a.Problem}},
+		{Name: "seed", Shape: []int{len(a.Seed), 2}, Data: halves},
 		{Name: "first", Shape: []int{len(a.First)}, Data: a.First},
 		{Name: "count", Shape: []int{len(a.Count)}, Data: a.Count},
 	}
@@ -69,8 +81,20 @@ func ReadArchive(path string) (*Archive, error) {
 			*part.to = append(*part.to, int64(x))
 		}
 	}
-	if len(a.First) != len(a.Count) {
-		return nil, fmt.Errorf("%s: %w: %d first trajectories and %d counts", path, ErrMismatch, len(a.First), len(a.Count))
+	problem, _, err := f.Float64("problem")
+	if err != nil {
+		return nil, err
+	}
+	halves, _, err := f.Float64("seed")
+	if err != nil {
+		return nil, err
+	}
+	if len(a.First) != len(a.Count) || len(halves) != 2*len(a.Count) || len(problem) != 1 {
+		return nil, fmt.Errorf("%s: %w: %d first trajectories, %d counts and %d seeds", path, ErrMismatch, len(a.First), len(a.Count), len(halves)/2)
+	}
+	a.Problem = int64(problem[0])
+	for i := range a.Count {
+		a.Seed = append(a.Seed, uint64(halves[2*i])<<32|uint64(halves[2*i+1]))
 	}
 	total := 0
 	for _, c := range a.Count {
@@ -99,9 +123,12 @@ func ReadArchive(path string) (*Archive, error) {
 	return a, nil
 }
 
-// Merge adds o to a. It returns ErrMismatch when the two are not of one grid
-// and the same times, or have trajectories in common; a is then as it was.
+// Merge adds o to a. It returns ErrMismatch when the two are not of one
+// problem, grid and times, or have trajectories in common; a is then as it was.
 func (a *Archive) Merge(o *Archive) error {
+	if a.Problem != o.Problem {
+		return fmt.Errorf("%w: they are of different scenarios", ErrMismatch)
+	}
 	if len(a.Times) != len(o.Times) {
 		return fmt.Errorf("%w: %d recorded times and %d", ErrMismatch, len(a.Times), len(o.Times))
 	}
@@ -112,7 +139,7 @@ func (a *Archive) Merge(o *Archive) error {
 	}
 	for i, f := range a.First {
 		for k, g := range o.First {
-			if f < g+o.Count[k] && g < f+a.Count[i] {
+			if a.Seed[i] == o.Seed[k] && f < g+o.Count[k] && g < f+a.Count[i] {
 				return fmt.Errorf("%w: both hold trajectory %d", ErrMismatch, max(f, g))
 			}
 		}
@@ -125,6 +152,6 @@ func (a *Archive) Merge(o *Archive) error {
 			a.Current[i][j] += v
 		}
 	}
-	a.First, a.Count = append(a.First, o.First...), append(a.Count, o.Count...)
+	a.Seed, a.First, a.Count = append(a.Seed, o.Seed...), append(a.First, o.First...), append(a.Count, o.Count...)
 	return nil
 }

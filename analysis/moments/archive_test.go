@@ -14,7 +14,7 @@ import (
 // archive returns the moments of trajectories from to to−1 of an ensemble.
 func archive(t testing.TB, e *ensemble, from, to int) *Archive {
 	t.Helper()
-	a := &Archive{Times: []float64{40, 80}, First: []int64{int64(from)}, Count: []int64{int64(to - from)}}
+	a := &Archive{Times: []float64{40, 80}, Problem: 77, Seed: []uint64{1<<63 + 5}, First: []int64{int64(from)}, Count: []int64{int64(to - from)}}
 	for i := range a.Times {
 		a.Sums = append(a.Sums, sum(t, pick(e.density[i], span(from, to))))
 		a.Current = append(a.Current, sum(t, pick(e.current[i], span(from, to))).Density)

@@ -9,13 +9,16 @@ import (
 	"tailrace/gpe/flow"
 )
 
-// horizonInput puts together what the account of the last recorded time needs.
+// horizonInput puts together what the account of the last recorded time needs;
+// without a store, what can be foreseen.
 func horizonInput(s *configs.Scenario, predicted flow.Profile, store *moments.Store, sums *moments.Sums) horizon.Input {
 	p := s.Problem
 	last := len(p.Times) - 1
 	t := p.Times[last]
-	in := horizon.Input{Problem: p, Sums: sums, Shots: store.Shots(last), Current: store.MeanCurrent(last), Time: t,
-		Predicted: predicted, Settings: horizon.DefaultSettings}
+	in := horizon.Input{Problem: p, Sums: sums, Time: t, Predicted: predicted, Settings: horizon.DefaultSettings}
+	if store != nil {
+		in.Shots, in.Current = store.Shots(last), store.MeanCurrent(last)
+	}
 	if s.Sweep != nil {
 		in.Frame = horizon.Frame{Position: s.Sweep.Position(t), Speed: s.Sweep.Speed, Age: t - s.Sweep.Ramp}
 		in.Step = horizon.Step{Depth: s.Sweep.Depth, Width: s.Sweep.Width}

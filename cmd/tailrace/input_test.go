@@ -200,26 +200,29 @@ func TestBadCommand(t *testing.T) {
 	}
 }
 
-// What shows only on the way ends with status 1.
-func TestFailedWork(t *testing.T) {
+// What would end in nothing is refused before any time is spent, and leaves no
+// folder that stands in the way of the next try.
+func TestHopelessRuns(t *testing.T) {
 	for _, c := range []struct {
 		name, base, old, new string
 		want                 string
 	}{
 		{"too hot", ring, `atoms = 6400`, "atoms = 6400\ntemperature = 1000",
-			`the fluctuations hold more atoms than the cloud: it is too hot, too thin or the grid too fine`},
+			`./q.toml:5: cloud.temperature = 1000: a cloud that is mostly condensate, the fluctuations hold more atoms than the cloud: it is too hot, too thin or the grid too fine`},
 		{"one trajectory", ring, "trajectories = 60", "trajectories = 1",
-			`the ensemble is in q-run, but its horizon could not be read: a correlation map needs at least 2 trajectories, there are 1`},
+			`./q.toml:17: ensemble.trajectories = 1: at least 2 for a correlation, and a few thousand to see the band`},
 		{"recorded before there is a band", ring, "[40, 80]", "[30]",
-			`the ensemble is in q-run, but its horizon could not be read: the upstream window cannot be used: from -4.225 to -4 it has 1 points, at least 8 are needed; record later, so that the band is longer`},
+			`./q.toml:20: record.times = [30]: a last time at which there is a band to read, the upstream window cannot be used: from -4.225 to -4 it has 1 points, at least 8 are needed; record later, so that the band is longer`},
+		{"hardly any noise", ring, "trajectories = 60", "trajectories = 60\nnoise_cutoff = 0.05",
+			`./q.toml:18: ensemble.noise_cutoff = 0.05: at least 0.79, it leaves 3 waves, too few for any band`},
 	} {
 		t.Run(c.name, func(t *testing.T) {
 			t.Parallel()
 			folder := t.TempDir()
 			write(t, folder, "q.toml", replace(t, c.base, c.old, c.new))
-			expect(t, tailrace(t, folder, "run", "./q.toml"), failed, c.want)
-			if _, err := os.Stat(filepath.Join(folder, "q-run", "result.json")); err == nil {
-				t.Error("there is a result")
+			expect(t, tailrace(t, folder, "run", "./q.toml"), inputFault, c.want)
+			if _, err := os.Stat(filepath.Join(folder, "q-run")); err == nil {
+				t.Error("there is a folder")
 			}
 		})
 	}

@@ -16,6 +16,7 @@ import (
 	"tailrace/analysis/report"
 	"tailrace/configs"
 	"tailrace/gpe"
+	"tailrace/gpe/flow"
 	"tailrace/gpe/lanes"
 )
 
@@ -57,104 +58,164 @@ func (o *runOptions) run(ctx context.Context, name string) error {
 	if err != nil {
 		return err
 	}
-	scenario, err := config.Scenario()
-	if err != nil {
+	r := running{options: o, config: config}
+	if err := r.prepare(); err != nil {
 		return err
 	}
-	predicted, err := scenario.Predicted()
+	if err := r.open(); err != nil {
+		return err
+	}
+	if err := r.carry(ctx); err != nil {
+		return err
+	}
+	return r.conclude(ctx)
+}
+
+// running is one run on its way from config to report.
+type running struct {
+	options   *runOptions
+	config    *configs.Config
+	scenario  *configs.Scenario
+	predicted flow.Profile
+	cache     gpe.ModeCache
+	cached    bool
+	ensemble  *gpe.Ensemble
+	folder    *folder.Folder
+	manifest  folder.Manifest
+	store     *moments.Store
+	bar       *progress
+	engine    report.Engine
+}
+
+// prepare builds the problem and refuses what would end in nothing: before
+// anything is written and any time is spent.
+func (r *running) prepare() (err error) {
+	if r.scenario, err = r.config.Scenario(); err != nil {
+		return err
+	}
+	r.predicted, err = r.scenario.Predicted()
 	if err != nil && !errors.Is(err, configs.ErrNoPrediction) {
 		return err
 	}
-	if o.folder == "" {
-		o.folder = config.Name() + "-run"
+	if r.config.Ensemble.Trajectories < 2 {
+		return r.config.Fault("ensemble.trajectories", "", "at least 2 for a correlation", "and a few thousand to see the band")
 	}
-	open := folder.Create
-	if o.resume {
-		open = folder.Resume
+	if _, err := horizon.Foresee(horizonInput(r.scenario, r.predicted, nil, nil)); err != nil {
+		return r.config.Fault("record.times", "", "a last time at which there is a band to read", err.Error())
 	}
-	f, err := open(o.folder)
-	if err != nil {
+	if !r.options.noCache {
+		r.cache = gpe.DefaultModeCache()
+	}
+	if r.cached, err = r.scenario.AddNoise(r.cache); err != nil {
 		return err
 	}
+	if r.ensemble, err = gpe.NewEnsemble(r.scenario.Problem); err != nil {
+		return err
+	}
+	// A first draw shows a cloud too hot or too thin.
+	p := r.scenario.Problem
+	if err := p.Noise.Sample(lanes.NewBatch(p.Grid.N), p.Seed, 0); err != nil {
+		return r.config.Fault("cloud.temperature", "", "a cloud that is mostly condensate", err.Error())
+	}
+	return nil
+}
 
-	p := scenario.Problem
-	fmt.Fprintf(os.Stderr, "%s: %d points over %.4g ξ, %d trajectories\n", config.Name(), p.Grid.N, p.Grid.Length(), config.Ensemble.Trajectories)
-	cache := gpe.DefaultModeCache()
-	if o.noCache {
-		cache = gpe.ModeCache{}
+// open makes or opens the run's folder.
+func (r *running) open() (err error) {
+	path := r.options.folder
+	if path == "" {
+		path = r.config.Name() + "-run"
 	}
-	cached, err := scenario.AddNoise(cache)
-	if err != nil {
-		return err
-	}
-	ensemble, err := gpe.NewEnsemble(p)
-	if err != nil {
-		return err
-	}
-	var bar *progress
-	store := moments.NewStore(config.Ensemble.Trajectories, p.Grid.N, len(p.Times), func(n int) { bar.update(n) })
-	manifest := folder.Manifest{Version: version, Source: config.Source, Config: string(config.Text), Seed: p.Seed,
-		Trajectories: store.Count, Points: p.Grid.N, Steps: ensemble.Steps(), Times: p.Times, Workers: o.workers, Kernel: lanes.Kernel()}
-	if o.resume {
-		if err := takeUp(f, config, store); err != nil {
+	p := r.scenario.Problem
+	r.store = moments.NewStore(r.config.Ensemble.Trajectories, p.Grid.N, len(p.Times), func(n int) { r.bar.update(n) })
+	r.manifest = folder.Manifest{Version: version, Source: r.config.Source, Config: string(r.config.Text), Seed: p.Seed,
+		Trajectories: r.store.Count, Points: p.Grid.N, Steps: r.ensemble.Steps(), Times: p.Times, Workers: r.options.workers, Kernel: lanes.Kernel()}
+	if r.options.resume {
+		if r.folder, err = folder.Resume(path); err != nil {
 			return err
 		}
-	} else if err := f.WriteJSON("run.json", manifest); err != nil {
+		return takeUp(r.folder, r.config, r.store)
+	}
+	if r.folder, err = folder.Create(path); err != nil {
 		return err
 	}
-	begun := store.Finished()
-	earlier := store.StepTime()
-	bar = newProgress(store.Count, begun)
+	return r.folder.WriteJSON("run.json", r.manifest)
+}
+
+// carry carries the trajectories that are not finished.
+func (r *running) carry(ctx context.Context) error {
+	p, store := r.scenario.Problem, r.store
+	fmt.Fprintf(os.Stderr, "%s: %d points over %.4g ξ, %d trajectories\n", r.config.Name(), p.Grid.N, p.Grid.Length(), store.Count)
+	begun, earlier := store.Finished(), store.StepTime()
+	r.bar = newProgress(store.Count, begun)
 	start := time.Now()
-	err = ensemble.Run(ctx, store.Pending(), store.Count, o.workers, store)
-	bar.end()
-	if errors.Is(err, context.Canceled) {
-		if err := store.Save(f.File("partial.npz")); err != nil {
-			return err
+	err := r.ensemble.Run(ctx, store.Pending(), store.Count, r.options.workers, store)
+	r.bar.end()
+	switch {
+	case errors.Is(err, context.Canceled):
+		return r.stop()
+	case err != nil:
+		if !r.options.resume {
+			err = errors.Join(err, r.folder.Abandon())
 		}
-		return fmt.Errorf("stopped after %s; --resume with the same config and folder goes on", store)
-	}
-	if err != nil {
 		return err
 	}
-	engine := report.Engine{Kernel: lanes.Kernel(), Workers: o.workers, Steps: ensemble.Steps(), StepTime: store.StepTime() - earlier,
-		Wall: time.Since(start), Trajectories: store.Count - begun, NoiseModes: p.Noise.Describe(), ModesFromCache: cached}
-	manifest.Finished, manifest.Seconds = store.Finished(), time.Since(start).Seconds()
-	manifest.NormDrift, manifest.EnergyDrift = store.Conserved().NormDrift, store.Conserved().EnergyDrift
+	r.engine = report.Engine{Kernel: lanes.Kernel(), Workers: r.options.workers, Steps: r.ensemble.Steps(), StepTime: store.StepTime() - earlier,
+		Wall: time.Since(start), Trajectories: store.Count - begun, NoiseModes: p.Noise.Describe(), ModesFromCache: r.cached}
+	r.manifest.Finished, r.manifest.Seconds = store.Finished(), time.Since(start).Seconds()
+	r.manifest.NormDrift, r.manifest.EnergyDrift = store.Conserved().NormDrift, store.Conserved().EnergyDrift
+	return nil
+}
 
-	sums, err := writeMoments(f, p, store)
+// stop keeps what a run that was stopped has got so far.
+func (r *running) stop() error {
+	if err := r.store.Save(r.folder.File("partial.npz")); err != nil {
+		return err
+	}
+	return fmt.Errorf("stopped after %s; --resume with the same config and folder goes on", r.store)
+}
+
+// conclude draws up the account and writes everything.
+func (r *running) conclude(ctx context.Context) error {
+	f, p := r.folder, r.scenario.Problem
+	sums, err := r.writeMoments()
 	if err != nil {
 		return err
 	}
-	input := horizonInput(scenario, predicted, store, sums)
+	input := horizonInput(r.scenario, r.predicted, r.store, sums)
 	account, err := horizon.Draw(input)
 	if err != nil {
-		return fmt.Errorf("the ensemble is in %s, but its horizon could not be read: %w", f.Path, err)
+		err = fmt.Errorf("the ensemble is in %s, but its horizon could not be read: %w", f.Path, err)
+		return errors.Join(err, r.store.Save(f.File("partial.npz"))) // so that --resume can try again
 	}
-	checks := append(scenario.Checks, horizon.Checks(p, account)...)
-	if probe, err := probeCutoff(ctx, scenario, cache, account, input, o.workers); err != nil {
+	checks := append(r.scenario.Checks, horizon.Checks(p, account)...)
+	probe, err := probeCutoff(ctx, r.scenario, r.cache, account, input, r.options.workers)
+	switch {
+	case errors.Is(err, context.Canceled):
+		return r.stop()
+	case err != nil:
 		return err
-	} else if probe != nil {
+	case probe != nil:
 		checks = append(checks, probe.Check())
 	}
-	r := &report.Run{Title: config.Title, Config: config.Source, Version: version,
-		Units:   report.Units{Lab: scenario.InLab, Scale: scenario.Scale, PerXi: p.AtomsPerLength},
-		Account: account, Problem: p, Conserved: store.Conserved(), Engine: engine,
+	out := &report.Run{Title: r.config.Title, Config: r.config.Source, Version: version,
+		Units:   report.Units{Lab: r.scenario.InLab, Scale: r.scenario.Scale, PerXi: p.AtomsPerLength},
+		Account: account, Problem: p, Conserved: r.store.Conserved(), Engine: r.engine,
 		Checks: checks, Warnings: account.Warnings}
-	if r.SpaceTime, err = spaceTime(scenario); err != nil {
+	if out.SpaceTime, err = spaceTime(r.scenario); err != nil {
 		return err
 	}
-	if err := r.WriteArrays(f.Path, store.Shots(len(p.Times)-1)); err != nil {
+	if err := out.WriteArrays(f.Path, input.Shots); err != nil {
 		return err
 	}
-	if _, err := r.Figures(f.File("figures")); err != nil {
+	if _, err := out.Figures(f.File("figures")); err != nil {
 		return err
 	}
-	result, err := r.JSON()
+	result, err := out.JSON()
 	if err != nil {
 		return err
 	}
-	if err := f.WriteJSON("run.json", manifest); err != nil {
+	if err := f.WriteJSON("run.json", r.manifest); err != nil {
 		return err
 	}
 	if err := f.Write("result.json", result); err != nil {
@@ -163,11 +224,11 @@ func (o *runOptions) run(ctx context.Context, name string) error {
 	if err := f.Remove("partial.npz"); err != nil {
 		return err
 	}
-	if o.asJSON {
+	if r.options.asJSON {
 		_, err = os.Stdout.Write(result)
 		return err
 	}
-	if err := r.Summary(os.Stdout); err != nil {
+	if err := out.Summary(os.Stdout); err != nil {
 		return err
 	}
 	fmt.Printf("\nfigures, arrays and result.json are in %s\n", f.Path)
@@ -190,15 +251,16 @@ func takeUp(f *folder.Folder, config *configs.Config, store *moments.Store) erro
 }
 
 // writeMoments sums up every recorded time and returns the last sums.
-func writeMoments(f *folder.Folder, p *gpe.Problem, store *moments.Store) (*moments.Sums, error) {
-	archive := &moments.Archive{Times: p.Times, First: []int64{0}, Count: []int64{int64(store.Count)}}
+func (r *running) writeMoments() (*moments.Sums, error) {
+	p := r.scenario.Problem
+	archive := &moments.Archive{Times: p.Times, Problem: p.Fingerprint(), Seed: []uint64{p.Seed}, First: []int64{0}, Count: []int64{int64(r.store.Count)}}
 	for i := range p.Times {
 		s := moments.NewSums(p.Grid.N)
-		if err := s.Add(store.Shots(i)); err != nil {
+		if err := s.Add(r.store.Shots(i)); err != nil {
 			return nil, err
 		}
 		archive.Sums = append(archive.Sums, s)
-		archive.Current = append(archive.Current, store.CurrentSum(i))
+		archive.Current = append(archive.Current, r.store.CurrentSum(i))
 	}
-	return archive.Sums[len(archive.Sums)-1], archive.Write(f.File("moments.npz"))
+	return archive.Sums[len(archive.Sums)-1], archive.Write(r.folder.File("moments.npz"))
 }
