@@ -39,10 +39,7 @@ func BenchmarkSplitStep(b *testing.B) {
 func BenchmarkNoise(b *testing.B) {
 	g := NewGrid(512, 180, -90)
 	box := Box{Length: 120, WallWidth: 1, WallHeight: 6}
-	v := make([]float64, g.N)
-	for j := range v {
-		v[j] = box.At(g.X(j))
-	}
+	v := trapOn(g, box)
 	ground, err := FindGround(g, fluid.Cubic(), v, 1)
 	if err != nil {
 		b.Fatal(err)

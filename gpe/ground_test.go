@@ -54,10 +54,7 @@ func TestGroundIsThomasFermi(t *testing.T) {
 func TestGroundAtAWall(t *testing.T) {
 	g := NewGrid(4096, 40, -20)
 	box := Box{Length: 20, WallWidth: 0.05, WallHeight: 4000}
-	v := make([]float64, g.N)
-	for j := range v {
-		v[j] = box.At(g.X(j))
-	}
+	v := trapOn(g, box)
 	ground, err := FindGround(g, fluid.Cubic(), v, 1)
 	if err != nil {
 		t.Fatal(err)
@@ -76,10 +73,7 @@ func TestGroundAtAWall(t *testing.T) {
 func TestGroundResidualAndRefusal(t *testing.T) {
 	g := NewGrid(256, 60, -30)
 	box := Box{Length: 40, WallWidth: 1, WallHeight: 6}
-	v := make([]float64, g.N)
-	for j := range v {
-		v[j] = box.At(g.X(j))
-	}
+	v := trapOn(g, box)
 	for _, law := range []fluid.Law{fluid.Cubic(), fluid.Swollen(0.4)} {
 		ground, err := FindGround(g, law, v, law.Mu(1))
 		if err != nil {

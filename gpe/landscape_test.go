@@ -24,14 +24,17 @@ func (s still) Steady(float64) (potential, coupling bool)    { return true, true
 func (s still) Power(_, _ []float64, _ float64) (lo, hi int) { return 0, 0 }
 func (s still) Drift() float64                               { return 0 }
 
-// harmonicOn returns ω²x²/2 on a grid.
-func harmonicOn(g Grid, omega float64) []float64 {
+// trapOn returns a trap's potential on a grid.
+func trapOn(g Grid, trap Confinement) []float64 {
 	v := make([]float64, g.N)
 	for j := range v {
-		v[j] = omega * omega * g.X(j) * g.X(j) / 2
+		v[j] = trap.At(g.X(j))
 	}
 	return v
 }
+
+// harmonicOn returns ω²x²/2 on a grid.
+func harmonicOn(g Grid, omega float64) []float64 { return trapOn(g, Harmonic{Frequency: omega}) }
 
 // follow carries one field through equal intervals and returns what look makes
 // of its density at each, the start included.

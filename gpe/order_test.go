@@ -39,10 +39,7 @@ func smoothSweep(t testing.TB, law fluid.Law) *Problem {
 	g := NewGrid(128, 60, -30)
 	box := Box{Length: 24, WallWidth: 2, WallHeight: 3}
 	land := NewSweep(g, Sweep{Trap: box, Depth: 0.7, Width: 2, Speed: 0.8, Start: 0, Ramp: 0})
-	v := make([]float64, g.N)
-	for j := range v {
-		v[j] = box.At(g.X(j))
-	}
+	v := trapOn(g, box)
 	ground, err := FindGround(g, law, v, law.Mu(1))
 	if err != nil {
 		t.Fatal(err)

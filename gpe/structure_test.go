@@ -160,10 +160,7 @@ func TestStructureFactorInABox(t *testing.T) {
 	const perXi = 2000
 	g := NewGrid(256, 128, -64)
 	box := Box{Length: 100, WallWidth: 1, WallHeight: 6}
-	v := make([]float64, g.N)
-	for j := range v {
-		v[j] = box.At(g.X(j))
-	}
+	v := trapOn(g, box)
 	ground, err := FindGround(g, fluid.Cubic(), v, 1)
 	if err != nil {
 		t.Fatal(err)
