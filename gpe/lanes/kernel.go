@@ -33,12 +33,6 @@ type (
 	middleFunc func(re, im, kinRe, kinIm []float64)
 )
 
-// active is the kernel that plans and sweeps use.
-var active = &portable
-
-// Kernel returns the name of the kernel in use.
-func Kernel() string { return active.name }
-
 // portable is the kernel in plain Go. Its radices are those that were fastest
 // with the 16 floating-point registers that the compiler has at hand.
 var portable = kernel{

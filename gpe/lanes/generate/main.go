@@ -1,0 +1,19 @@
+// Generate writes the assembly kernels of package lanes. It is a module of its
+// own, so that whoever builds the program does not need what it needs. Run it
+// by go generate in the folder above.
+package main
+
+import (
+	. "github.com/mmcloughlin/avo/build"
+)
+
+func main() {
+	ConstraintExpr("amd64,!purego")
+	for _, m := range []machine{{wide: true, name: "AVX512"}, {name: "AVX2"}} {
+		m.passes()
+		m.middles()
+		m.phases()
+		m.damp()
+	}
+	Generate()
+}

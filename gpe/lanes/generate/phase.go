@@ -1,0 +1,172 @@
+package main
+
+import (
+	"fmt"
+
+	. "github.com/mmcloughlin/avo/build"
+	. "github.com/mmcloughlin/avo/operand"
+	"github.com/mmcloughlin/avo/reg"
+)
+
+// The polynomials of rotate.go, highest term first.
+var sine = []float64{
+	7.408584124510002e-07, -2.1872378330766814e-05, 0.00046628604345404966, -0.0073704272753377644,
+	0.08214588614216695, -0.5992645292863936, 2.550164039875999, -5.167712780049946, 3.141592653589793,
+}
+
+var cosine = []float64{
+	4.147269028728277e-06, -0.00010456453928528452, 0.0019295555721679475, -0.02580688861695975,
+	0.2353306301195154, -1.3352627688431513, 4.058712126416504, -4.934802200544677, 1,
+}
+
+var numbers = map[float64]Mem{}
+
+// number returns the address of a constant.
+func number(v float64) Mem {
+	at, ok := numbers[v]
+	if !ok {
+		at = ConstData(fmt.Sprintf("number%d", len(numbers)), F64(v))
+		numbers[v] = at
+	}
+	return at
+}
+
+type law int
+
+const (
+	cubic law = iota
+	shifted
+	swollen
+)
+
+// phases writes the local phases of the three laws.
+func (m machine) phases() {
+	for _, l := range []struct {
+		law       law
+		name, sig string
+	}{
+		{cubic, "phaseCubic", "func(re, im, potential, coupling *float64, points int)"},
+		{shifted, "phaseShifted", "func(re, im, potential, coupling, density *float64, points int)"},
+		{swollen, "phaseSwollen", "func(re, im, potential, coupling, density *float64, swelling, scale float64, points int)"},
+	} {
+		m.phase(l.name+m.name, l.sig, l.law)
+	}
+}
+
+// phase is a sweep in which each point's phase t = v + g f is reduced by its
+// nearest whole number n, and the field turned by (−1)^n exp(−iπ(t−n)).
+func (m machine) phase(name, sig string, l law) {
+	TEXT(name, NOSPLIT, sig)
+	Pragma("noescape")
+	re, im := Load(Param("re"), GP64()), Load(Param("im"), GP64())
+	v, g := Load(Param("potential"), GP64()), Load(Param("coupling"), GP64())
+	var s reg.Register
+	if l != cubic {
+		s = Load(Param("density"), GP64())
+	}
+	var swelling, scale vec
+	if l == swollen {
+		swelling, scale = m.argument("swelling"), m.argument("scale")
+	}
+	points := Load(Param("points"), GP64())
+	magic := m.spread(number(3 << 51))
+	Label(name + "next")
+	for _, offset := range m.halves() {
+		x := z{m.load(Mem{Base: re, Disp: offset}), m.load(Mem{Base: im, Disp: offset})}
+		rho := m.mul(x.re, x.re)
+		plus(rho, x.im, x.im)
+		f := rho
+		coupling := m.spread(Mem{Base: g})
+		if l != cubic {
+			f = m.sub(rho, m.spread(Mem{Base: s}))
+		}
+		if l == swollen {
+			// scale·y(4+9y)/(r(1+3y+r)), r = √(1+2y), y = ηn.
+			one := m.spread(number(1))
+			y := m.mul(swelling, f)
+			root := m.add(y, y)
+			root = m.add(root, one)
+			VSQRTPD(root, root)
+			over := m.spread(number(4))
+			plus(over, y, m.spread(number(9)))
+			over = m.mul(over, y)
+			under := m.add(one, root)
+			plus(under, y, m.spread(number(3)))
+			under = m.mul(under, root)
+			VDIVPD(under, over, over)
+			f = m.mul(over, scale)
+		}
+		t := m.spread(Mem{Base: v})
+		plus(t, coupling, f)
+		n := m.add(t, magic)
+		part := m.sub(t, m.sub(n, magic))
+		sign := m.reg()
+		VPSLLQ(U8(63), n, sign)
+		square := m.mul(part, part)
+		sin, cos := m.spread(number(sine[0])), m.spread(number(cosine[0]))
+		for i := 1; i < len(sine); i++ {
+			m.horner(sin, square, number(sine[i]))
+			m.horner(cos, square, number(cosine[i]))
+		}
+		sin = m.mul(sin, part)
+		m.flip(sin, sign)
+		m.flip(cos, sign)
+		// (re + i im)(cos − i sin)
+		newRe, newIm := m.mul(x.re, cos), m.mul(x.im, cos)
+		plus(newRe, x.im, sin)
+		minus(newIm, x.re, sin)
+		VMOVUPD(newRe, Mem{Base: re, Disp: offset})
+		VMOVUPD(newIm, Mem{Base: im, Disp: offset})
+	}
+	ADDQ(U8(line), re)
+	ADDQ(U8(line), im)
+	ADDQ(U8(8), v)
+	ADDQ(U8(8), g)
+	if l != cubic {
+		ADDQ(U8(8), s)
+	}
+	DECQ(points)
+	JNZ(LabelRef(name + "next"))
+	finish(m)
+}
+
+// flip changes the sign of x where the sign bit of s is set.
+func (m machine) flip(x, s vec) {
+	if m.wide {
+		VPXORQ(s, x, x)
+		return
+	}
+	VXORPD(s, x, x)
+}
+
+// argument returns a float64 parameter in all lanes.
+func (m machine) argument(name string) vec {
+	p, err := Param(name).Resolve()
+	if err != nil {
+		panic(err)
+	}
+	return m.spread(p.Addr)
+}
+
+// damp writes the multiplication of each point by a real number.
+func (m machine) damp() {
+	name := "damp" + m.name
+	TEXT(name, NOSPLIT, "func(re, im, d *float64, points int)")
+	Pragma("noescape")
+	re, im, d := Load(Param("re"), GP64()), Load(Param("im"), GP64()), Load(Param("d"), GP64())
+	points := Load(Param("points"), GP64())
+	Label(name + "next")
+	by := m.spread(Mem{Base: d})
+	for _, offset := range m.halves() {
+		for _, base := range []reg.Register{re, im} {
+			at := Mem{Base: base, Disp: offset}
+			VMOVUPD(m.mul(by, m.load(at)), at)
+		}
+	}
+	ADDQ(U8(line), re)
+	ADDQ(U8(line), im)
+	ADDQ(U8(8), d)
+	DECQ(points)
+	JNZ(LabelRef(name + "next"))
+	finish(m)
+}

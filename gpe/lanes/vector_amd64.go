@@ -1,0 +1,105 @@
+//go:build !purego
+
+package lanes
+
+import "golang.org/x/sys/cpu"
+
+//go:generate go run -C generate . -out ../kernels_amd64.s -stubs ../kernels_amd64.go -pkg lanes
+
+// vectorKernels returns the assembly kernels that this processor can run.
+func vectorKernels() (k []*kernel) {
+	if cpu.X86.HasAVX512F && cpu.X86.HasAVX512DQ {
+		k = append(k, &wide)
+	}
+	if cpu.X86.HasAVX2 && cpu.X86.HasFMA {
+		k = append(k, &narrow)
+	}
+	return k
+}
+
+// wide holds a point of all lanes in one register of AVX-512; narrow in two of
+// AVX2. Both take the leading passes of lengths 3·2^a and 5·2^a from the
+// portable kernel.
+var wide = kernel{
+	name:         "avx512",
+	radices:      wideRadices,
+	forward:      [maxRadix + 1]passFunc{2: twiddled(forward2AVX512), 3: forward3, 4: twiddled(forward4AVX512), 5: forward5, 8: twiddled(forward8AVX512)},
+	backward:     [maxRadix + 1]passFunc{2: twiddled(backward2AVX512), 3: backward3, 4: twiddled(backward4AVX512), 5: backward5, 8: twiddled(backward8AVX512)},
+	middle:       [maxRadix + 1]middleFunc{4: grouped(middle4AVX512, 4), 8: grouped(middle8AVX512, 8)},
+	phaseCubic:   cubicPhase(phaseCubicAVX512),
+	phaseShifted: shiftedPhase(phaseShiftedAVX512),
+	phaseSwollen: swollenPhase(phaseSwollenAVX512),
+	damp:         damping(dampAVX512),
+}
+
+var narrow = kernel{
+	name:         "avx2",
+	radices:      narrowRadices,
+	forward:      [maxRadix + 1]passFunc{2: twiddled(forward2AVX2), 3: forward3, 4: twiddled(forward4AVX2), 5: forward5},
+	backward:     [maxRadix + 1]passFunc{2: twiddled(backward2AVX2), 3: backward3, 4: twiddled(backward4AVX2), 5: backward5},
+	middle:       [maxRadix + 1]middleFunc{4: grouped(middle4AVX2, 4)},
+	phaseCubic:   cubicPhase(phaseCubicAVX2),
+	phaseShifted: shiftedPhase(phaseShiftedAVX2),
+	phaseSwollen: swollenPhase(phaseSwollenAVX2),
+	damp:         damping(dampAVX2),
+}
+
+// wideRadices uses as many 8 as there are, with the 4 in between.
+func wideRadices(a int) []int {
+	var r []int
+	for ; a%3 != 0; a -= 2 {
+		r = append(r, 4)
+	}
+	eights := a / 3
+	if eights == 0 {
+		return r
+	}
+	out := []int{}
+	for range eights - 1 {
+		out = append(out, 8)
+	}
+	return append(append(out, r...), 8)
+}
+
+// narrowRadices uses 4 throughout, led by a 2 for odd powers of two.
+func narrowRadices(a int) []int {
+	var r []int
+	if a%2 == 1 {
+		r = append(r, 2)
+		a--
+	}
+	for ; a > 0; a -= 2 {
+		r = append(r, 4)
+	}
+	return r
+}
+
+func twiddled(f func(re, im, twiddle *float64, blocks, span int)) passFunc {
+	return func(re, im []float64, p *pass) {
+		f(&re[0], &im[0], &p.twiddle[0], len(re)/(Width*p.radix*p.span), p.span)
+	}
+}
+
+func grouped(f func(re, im, kinRe, kinIm *float64, groups int), radix int) middleFunc {
+	return func(re, im, kinRe, kinIm []float64) {
+		f(&re[0], &im[0], &kinRe[0], &kinIm[0], len(re)/(Width*radix))
+	}
+}
+
+func cubicPhase(f func(re, im, v, g *float64, points int)) func(re, im, v, g []float64) {
+	return func(re, im, v, g []float64) { f(&re[0], &im[0], &v[0], &g[0], len(v)) }
+}
+
+func shiftedPhase(f func(re, im, v, g, s *float64, points int)) func(re, im, v, g, s []float64) {
+	return func(re, im, v, g, s []float64) { f(&re[0], &im[0], &v[0], &g[0], &s[0], len(v)) }
+}
+
+func swollenPhase(f func(re, im, v, g, s *float64, swelling, scale float64, points int)) func(re, im, v, g, s []float64, swelling, scale float64) {
+	return func(re, im, v, g, s []float64, swelling, scale float64) {
+		f(&re[0], &im[0], &v[0], &g[0], &s[0], swelling, scale, len(v))
+	}
+}
+
+func damping(f func(re, im, d *float64, points int)) func(re, im, d []float64) {
+	return func(re, im, d []float64) { f(&re[0], &im[0], &d[0], len(d)) }
+}
