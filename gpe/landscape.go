@@ -148,6 +148,17 @@ func (s *Sweep) Power(dv, dg []float64, t float64) (lo, hi int) {
 			return 0, 0
 		}
 	}
+	if rate == 0 {
+		// e^{2(x−x_s)/w} is a geometric series: one exponential for them all.
+		e, factor := math.Exp(2*(s.grid.X(lo)-xs)/s.Width), math.Exp(2*s.grid.Dx/s.Width)
+		scale := -2 * s.Depth * s.Speed / s.Width
+		for j := lo; j < hi; j++ {
+			// sech²y = 4e/(1+e)² with e = e^{2y}
+			dv[j], dg[j] = scale*e/((1+e)*(1+e)), 0
+			e *= factor
+		}
+		return lo, hi
+	}
 	for j := lo; j < hi; j++ {
 		th := math.Tanh((s.grid.X(j) - xs) / s.Width)
 		dv[j] = -f*s.Depth*s.Speed*(1-th*th)/(2*s.Width) -

@@ -277,35 +277,14 @@ func (t *TrappedNoise) Describe() string {
 func (t *TrappedNoise) Sample(b *lanes.Batch, seed uint64, first int) error {
 	const w = lanes.Width
 	count := t.modes.Count
-	re, im := make([][w]float64, count), make([][w]float64, count)
+	re, im := make([]float64, count*w), make([]float64, count*w)
 	for l := range w {
 		s := NewStream(seed, first+l)
 		for m, sd := range t.sd {
-			re[m][l], im[m][l] = sd*s.Normal(), sd*s.Normal()
+			re[m*w+l], im[m*w+l] = sd*s.Normal(), sd*s.Normal()
 		}
 	}
-	for j := range t.modes.Points {
-		sum(b.Re[j*w:(j+1)*w], t.modes.Plus[j*count:(j+1)*count], re)
-		sum(b.Im[j*w:(j+1)*w], t.modes.Minus[j*count:(j+1)*count], im)
-	}
+	lanes.Combine(b.Re, t.modes.Plus, re)
+	lanes.Combine(b.Im, t.modes.Minus, im)
 	return fixNumber(b, t.ground.Field, t.ground.Grid.Dx, t.ground.Atoms, float64(count)/(2*t.perXi))
-}
-
-// sum sets dst[l] = Σ_m f[m] beta[m][l].
-func sum(dst, f []float64, beta [][lanes.Width]float64) {
-	var a0, a1, a2, a3, a4, a5, a6, a7 float64
-	beta = beta[:len(f)]
-	for m, v := range f {
-		x := &beta[m]
-		a0 += v * x[0]
-		a1 += v * x[1]
-		a2 += v * x[2]
-		a3 += v * x[3]
-		a4 += v * x[4]
-		a5 += v * x[5]
-		a6 += v * x[6]
-		a7 += v * x[7]
-	}
-	d := (*[lanes.Width]float64)(dst)
-	*d = [lanes.Width]float64{a0, a1, a2, a3, a4, a5, a6, a7}
 }

@@ -20,6 +20,7 @@ type kernel struct {
 	phaseShifted func(re, im, v, g, s []float64)
 	phaseSwollen func(re, im, v, g, s []float64, swelling, scale float64)
 	damp         func(re, im, d []float64)
+	combine      func(dst, f, beta []float64)
 }
 
 const (
@@ -45,6 +46,7 @@ var portable = kernel{
 	phaseShifted: phaseShifted,
 	phaseSwollen: phaseSwollen,
 	damp:         damp,
+	combine:      combine,
 }
 
 // portableRadices uses radix 4 throughout, with one 8 at the end for odd powers

@@ -39,6 +39,9 @@ func phaseSwollenAVX512(re *float64, im *float64, potential *float64, coupling *
 func dampAVX512(re *float64, im *float64, d *float64, points int)
 
 //go:noescape
+func combineAVX512(dst *float64, f *float64, beta *float64, groups int, count int)
+
+//go:noescape
 func forward2AVX2(re *float64, im *float64, twiddle *float64, blocks int, span int)
 
 //go:noescape
@@ -63,3 +66,6 @@ func phaseSwollenAVX2(re *float64, im *float64, potential *float64, coupling *fl
 
 //go:noescape
 func dampAVX2(re *float64, im *float64, d *float64, points int)
+
+//go:noescape
+func combineAVX2(dst *float64, f *float64, beta *float64, groups int, count int)

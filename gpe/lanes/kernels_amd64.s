@@ -1142,6 +1142,47 @@ dampAVX512next:
 	VZEROUPPER
 	RET
 
+// func combineAVX512(dst *float64, f *float64, beta *float64, groups int, count int)
+// Requires: AVX, AVX512DQ, AVX512F
+TEXT ·combineAVX512(SB), NOSPLIT, $0-40
+	MOVQ dst+0(FP), AX
+	MOVQ f+8(FP), CX
+	MOVQ beta+16(FP), DX
+	MOVQ groups+24(FP), BX
+	MOVQ count+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x03, DI
+	LEAQ (DI)(DI*2), R8
+
+combineAVX512group:
+	MOVQ   DX, R9
+	MOVQ   SI, R10
+	VXORPD Z0, Z0, Z0
+	VXORPD Z1, Z1, Z1
+	VXORPD Z2, Z2, Z2
+	VXORPD Z3, Z3, Z3
+
+combineAVX512next:
+	VMOVUPD          (R9), Z4
+	VFMADD231PD.BCST (CX), Z4, Z0
+	VFMADD231PD.BCST (CX)(DI*1), Z4, Z1
+	VFMADD231PD.BCST (CX)(DI*2), Z4, Z2
+	VFMADD231PD.BCST (CX)(R8*1), Z4, Z3
+	ADDQ             $0x08, CX
+	ADDQ             $0x40, R9
+	DECQ             R10
+	JNZ              combineAVX512next
+	VMOVUPD          Z0, (AX)
+	VMOVUPD          Z1, 64(AX)
+	VMOVUPD          Z2, 128(AX)
+	VMOVUPD          Z3, 192(AX)
+	ADDQ             R8, CX
+	ADDQ             $0x00000100, AX
+	DECQ             BX
+	JNZ              combineAVX512group
+	VZEROUPPER
+	RET
+
 // func forward2AVX2(re *float64, im *float64, twiddle *float64, blocks int, span int)
 // Requires: AVX, FMA3
 TEXT ·forward2AVX2(SB), NOSPLIT, $0-40
@@ -2162,5 +2203,63 @@ dampAVX2next:
 	ADDQ         $0x08, DX
 	DECQ         BX
 	JNZ          dampAVX2next
+	VZEROUPPER
+	RET
+
+// func combineAVX2(dst *float64, f *float64, beta *float64, groups int, count int)
+// Requires: AVX, FMA3
+TEXT ·combineAVX2(SB), NOSPLIT, $0-40
+	MOVQ dst+0(FP), AX
+	MOVQ f+8(FP), CX
+	MOVQ beta+16(FP), DX
+	MOVQ groups+24(FP), BX
+	MOVQ count+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x03, DI
+	LEAQ (DI)(DI*2), R8
+
+combineAVX2group:
+	MOVQ   DX, R9
+	MOVQ   SI, R10
+	VXORPD Y0, Y0, Y0
+	VXORPD Y1, Y1, Y1
+	VXORPD Y2, Y2, Y2
+	VXORPD Y3, Y3, Y3
+	VXORPD Y4, Y4, Y4
+	VXORPD Y5, Y5, Y5
+	VXORPD Y6, Y6, Y6
+	VXORPD Y7, Y7, Y7
+
+combineAVX2next:
+	VMOVUPD      (R9), Y8
+	VMOVUPD      32(R9), Y9
+	VBROADCASTSD (CX), Y10
+	VFMADD231PD  Y8, Y10, Y0
+	VFMADD231PD  Y9, Y10, Y1
+	VBROADCASTSD (CX)(DI*1), Y10
+	VFMADD231PD  Y8, Y10, Y2
+	VFMADD231PD  Y9, Y10, Y3
+	VBROADCASTSD (CX)(DI*2), Y10
+	VFMADD231PD  Y8, Y10, Y4
+	VFMADD231PD  Y9, Y10, Y5
+	VBROADCASTSD (CX)(R8*1), Y10
+	VFMADD231PD  Y8, Y10, Y6
+	VFMADD231PD  Y9, Y10, Y7
+	ADDQ         $0x08, CX
+	ADDQ         $0x40, R9
+	DECQ         R10
+	JNZ          combineAVX2next
+	VMOVUPD      Y0, (AX)
+	VMOVUPD      Y1, 32(AX)
+	VMOVUPD      Y2, 64(AX)
+	VMOVUPD      Y3, 96(AX)
+	VMOVUPD      Y4, 128(AX)
+	VMOVUPD      Y5, 160(AX)
+	VMOVUPD      Y6, 192(AX)
+	VMOVUPD      Y7, 224(AX)
+	ADDQ         R8, CX
+	ADDQ         $0x00000100, AX
+	DECQ         BX
+	JNZ          combineAVX2group
 	VZEROUPPER
 	RET

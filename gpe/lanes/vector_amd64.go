@@ -30,6 +30,7 @@ var wide = kernel{
 	phaseShifted: shiftedPhase(phaseShiftedAVX512),
 	phaseSwollen: swollenPhase(phaseSwollenAVX512),
 	damp:         damping(dampAVX512),
+	combine:      combining(combineAVX512),
 }
 
 var narrow = kernel{
@@ -42,6 +43,7 @@ var narrow = kernel{
 	phaseShifted: shiftedPhase(phaseShiftedAVX2),
 	phaseSwollen: swollenPhase(phaseSwollenAVX2),
 	damp:         damping(dampAVX2),
+	combine:      combining(combineAVX2),
 }
 
 // wideRadices uses as many 8 as there are, with the 4 in between.
@@ -102,4 +104,20 @@ func swollenPhase(f func(re, im, v, g, s *float64, swelling, scale float64, poin
 
 func damping(f func(re, im, d *float64, points int)) func(re, im, d []float64) {
 	return func(re, im, d []float64) { f(&re[0], &im[0], &d[0], len(d)) }
+}
+
+// together is how many points the assembly combines at a time.
+const together = 4
+
+func combining(f func(dst, f, beta *float64, groups, count int)) func(dst, f, beta []float64) {
+	return func(dst, weights, beta []float64) {
+		count := len(beta) / Width
+		groups := len(dst) / (Width * together)
+		if groups > 0 {
+			f(&dst[0], &weights[0], &beta[0], groups, count)
+		}
+		if done := groups * together; done*Width < len(dst) {
+			combine(dst[done*Width:], weights[done*count:], beta)
+		}
+	}
 }

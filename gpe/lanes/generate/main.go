@@ -14,6 +14,7 @@ func main() {
 		m.middles()
 		m.phases()
 		m.damp()
+		m.combine()
 	}
 	Generate()
 }
