@@ -10,11 +10,10 @@ import (
 	"fmt"
 	"math"
 
-	"gonum.org/v1/gonum/blas"
-	"gonum.org/v1/gonum/blas/blas64"
 	"gonum.org/v1/gonum/mat"
 
 	"tailrace/analysis/moments"
+	"tailrace/gpe/lanes"
 )
 
 // Map is a correlation map on a grid of N points.
@@ -100,13 +99,14 @@ func fourthMoments(shots moments.Shots, mean []float64) *mat.SymDense {
 	n := shots.Pixels
 	sum := mat.NewSymDense(n, nil)
 	squares := make([]float64, block*n)
+	update := lanes.NewUpdater(n)
 	for first := 0; first < shots.Count(); first += block {
 		rows := min(block, shots.Count()-first)
 		for i, v := range shots.Data[first*n : (first+rows)*n] {
 			d := float64(v) - mean[i%n]
 			squares[i] = d * d
 		}
-		blas64.Syrk(blas.Trans, 1, blas64.General{Rows: rows, Cols: n, Stride: n, Data: squares[:rows*n]}, 1, sum.RawSymmetric())
+		update.Add(sum.RawSymmetric().Data, n, squares[:rows*n])
 	}
 	return sum
 }

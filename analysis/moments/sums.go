@@ -5,11 +5,10 @@ import (
 	"fmt"
 	"math"
 
-	"gonum.org/v1/gonum/blas"
-	"gonum.org/v1/gonum/blas/blas64"
 	"gonum.org/v1/gonum/mat"
 
 	"tailrace/gpe"
+	"tailrace/gpe/lanes"
 )
 
 // ErrMismatch means that two sets of sums do not belong together: they are of
@@ -31,7 +30,7 @@ func NewSums(points int) *Sums {
 	return &Sums{Density: make([]float64, points), Products: mat.NewSymDense(points, nil)}
 }
 
-// block is how many shots go into one rank-k update: enough for BLAS to
+// block is how many shots go into one rank-k update: enough to
 // stream, few enough for the double-precision copy to stay in cache.
 const block = 128
 
@@ -50,13 +49,14 @@ func (s *Sums) Add(shots Shots) error {
 		return fmt.Errorf("%w: %d points and %d", ErrMismatch, n, shots.Pixels)
 	}
 	wide := make([]float64, block*n)
+	update, products := lanes.NewUpdater(n), s.Products.RawSymmetric()
 	for first := 0; first < shots.Count(); first += block {
 		rows := min(block, shots.Count()-first)
 		for i, v := range shots.Data[first*n : (first+rows)*n] {
 			wide[i] = float64(v)
 			s.Density[i%n] += wide[i]
 		}
-		blas64.Syrk(blas.Trans, 1, blas64.General{Rows: rows, Cols: n, Stride: n, Data: wide[:rows*n]}, 1, s.Products.RawSymmetric())
+		update.Add(products.Data, products.Stride, wide[:rows*n])
 		s.Count += rows
 	}
 	return s.exact()

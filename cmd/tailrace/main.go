@@ -14,6 +14,7 @@ import (
 
 	"tailrace/analysis/folder"
 	"tailrace/configs"
+	"tailrace/gpe/lanes"
 )
 
 // version is the program's, and stands in every result.
@@ -50,6 +51,12 @@ func run() int {
 		return &usageError{fmt.Errorf("%w; %s --help lists what there is", err, c.CommandPath())}
 	})
 	root.AddCommand(runCommand(), checkCommand(), examplesCommand())
+	root.PersistentPreRunE = func(*cobra.Command, []string) error {
+		if err := lanes.CheckKernel(); err != nil {
+			return &usageError{fmt.Errorf("%s = %q: %w", lanes.Variable, os.Getenv(lanes.Variable), err)}
+		}
+		return nil
+	}
 	err := root.ExecuteContext(ctx)
 	if err == nil {
 		return done

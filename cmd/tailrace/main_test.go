@@ -127,7 +127,7 @@ points = 256
 length = 128
 [ensemble]
 trajectories = 60
-seed = 3
+seed = 1
 [record]
 times = [40, 80]
 `

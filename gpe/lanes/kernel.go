@@ -21,6 +21,9 @@ type kernel struct {
 	phaseSwollen func(re, im, v, g, s []float64, swelling, scale float64)
 	damp         func(re, im, d []float64)
 	combine      func(dst, f, beta []float64)
+	// tiles makes tilesAtOnce neighbouring tiles of an Updater's product.
+	tiles       func(dst, a, b []float64, rows int)
+	tilesAtOnce int
 }
 
 const (
@@ -47,6 +50,8 @@ var portable = kernel{
 	phaseSwollen: phaseSwollen,
 	damp:         damp,
 	combine:      combine,
+	tiles:        tile,
+	tilesAtOnce:  1,
 }
 
 // portableRadices uses radix 4 throughout, with one 8 at the end for odd powers

@@ -42,6 +42,9 @@ func dampAVX512(re *float64, im *float64, d *float64, points int)
 func combineAVX512(dst *float64, f *float64, beta *float64, groups int, count int)
 
 //go:noescape
+func tileAVX512(dst *float64, a *float64, b *float64, rows int, next int)
+
+//go:noescape
 func forward2AVX2(re *float64, im *float64, twiddle *float64, blocks int, span int)
 
 //go:noescape
@@ -69,3 +72,6 @@ func dampAVX2(re *float64, im *float64, d *float64, points int)
 
 //go:noescape
 func combineAVX2(dst *float64, f *float64, beta *float64, groups int, count int)
+
+//go:noescape
+func tileAVX2(dst *float64, a *float64, b *float64, rows int, next int)

@@ -31,6 +31,8 @@ var wide = kernel{
 	phaseSwollen: swollenPhase(phaseSwollenAVX512),
 	damp:         damping(dampAVX512),
 	combine:      combining(combineAVX512),
+	tiles:        tiling(tileAVX512),
+	tilesAtOnce:  2,
 }
 
 var narrow = kernel{
@@ -44,6 +46,8 @@ var narrow = kernel{
 	phaseSwollen: swollenPhase(phaseSwollenAVX2),
 	damp:         damping(dampAVX2),
 	combine:      combining(combineAVX2),
+	tiles:        tiling(tileAVX2),
+	tilesAtOnce:  1,
 }
 
 // wideRadices uses as many 8 as there are, with the 4 in between.
@@ -120,4 +124,8 @@ func combining(f func(dst, f, beta *float64, groups, count int)) func(dst, f, be
 			combine(dst[done*Width:], weights[done*count:], beta)
 		}
 	}
+}
+
+func tiling(f func(dst, a, b *float64, rows, next int)) func(dst, a, b []float64, rows int) {
+	return func(dst, a, b []float64, rows int) { f(&dst[0], &a[0], &b[0], rows, rows*side) }
 }

@@ -15,6 +15,7 @@ func main() {
 		m.phases()
 		m.damp()
 		m.combine()
+		m.tile()
 	}
 	Generate()
 }
