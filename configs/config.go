@@ -132,6 +132,7 @@ type Grid struct {
 	Points   int
 	Length   float64
 	TimeStep float64
+	Accuracy float64 // by which a time step is chosen
 }
 
 // Ensemble is the ensemble of trajectories.

@@ -262,6 +262,10 @@ var keys = []*key{
 		meaning: "time step",
 		field:   func(c *Config) any { return &c.Grid.TimeStep }},
 
+	{name: "grid.accuracy", kind: number, lab: inside("0", "1"), fallback: "0.02", example: "0.02",
+		meaning: "where time_step is left out: the error of the field, as a share of its norm, after 10 ħ/(m c²), by which time step and splitting are chosen",
+		field:   func(c *Config) any { return &c.Grid.Accuracy }},
+
 	{name: "ensemble.trajectories", kind: count, lab: between("1", "65536"), fallback: "1024", example: "1024",
 		meaning: "number of trajectories",
 		field:   func(c *Config) any { return &c.Ensemble.Trajectories }},

@@ -260,13 +260,13 @@ func goodLength(n int) int {
 	}
 }
 
-// timeStep chooses the time step where the config does not, and refuses one
-// that is unstable.
+// timeStep refuses a time step that is unstable. Where there is none, the
+// grid's limit stands in until AddNoise can choose one.
 func (s *Scenario) timeStep() error {
 	p := s.Problem
 	limit := p.Grid.MaxTimeStep()
 	if p.TimeStep == 0 {
-		p.TimeStep = math.Min(stepShare*limit, longStep)
+		p.TimeStep = stepShare * limit
 	}
 	if p.TimeStep > limit {
 		return s.Config.Fault("grid.time_step", "", fmt.Sprintf("at most %s is stable on this grid", s.duration(limit)),
@@ -386,11 +386,20 @@ func (s *Scenario) Predicted() (flow.Profile, error) {
 	return t, nil
 }
 
-// AddNoise finds the modes of the initial state and fills in Problem.Noise.
+// AddNoise finds the modes of the initial state and fills in Problem.Noise,
+// and, where the config gives no time step, chooses it and the splitting.
 func (s *Scenario) AddNoise(cache gpe.ModeCache) (cached bool, err error) {
 	p := s.Problem
-	p.Noise, cached, err = NoiseOf(p, cache, p.Cutoff)
-	return cached, err
+	if p.Noise, cached, err = NoiseOf(p, cache, p.Cutoff); err != nil || s.Config.Grid.TimeStep > 0 {
+		return cached, err
+	}
+	if p.Scheme, p.TimeStep, err = gpe.ChooseStep(p, s.Config.Grid.Accuracy); err != nil {
+		if errors.Is(err, gpe.ErrNoCondensate) {
+			return cached, s.Config.Fault("cloud.temperature", "", "a cloud that is mostly condensate", err.Error())
+		}
+		return cached, s.Config.Fault("grid.accuracy", "", "an accuracy that a time step can reach", err.Error())
+	}
+	return cached, nil
 }
 
 // NoiseOf returns the noise of p's initial state up to a cut-off.
