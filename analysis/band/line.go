@@ -30,8 +30,7 @@ const cellDelay = 0.6
 // FitLine fits the band's line. Kappa is where it starts; resamples is the
 // number of bootstrap samples behind the slope's error.
 func FitLine(s *Sides, g Geometry, kappa float64, resamples int, seed uint64) (*Line, error) {
-	cell := cellDelay / kappa
-	coarse := s.Coarse(int(cell*g.Up/spacing(s.Xu)), int(cell*g.Down/spacing(s.Xd)))
+	coarse := s.cells(g, kappa)
 	m := newLineModel(coarse, g)
 	best, err := m.fit(coarse.Correlation(), []float64{m.scale, kappa, 1, 0, 0})
 	if err != nil {
@@ -60,6 +59,26 @@ func FitLine(s *Sides, g Geometry, kappa float64, resamples int, seed uint64) (*
 	}
 	l.SlopeError = stat.StdDev(slopes, nil)
 	return l, nil
+}
+
+// cells averages the sides over cells in which a band of this κ hardly changes.
+func (s *Sides) cells(g Geometry, kappa float64) *Sides {
+	cell := cellDelay / kappa
+	return s.Coarse(int(cell*g.Up/spacing(s.Xu)), int(cell*g.Down/spacing(s.Xd)))
+}
+
+// SlopeOf returns the slope that FitLine finds in a map without noise: the
+// pattern at positions xu and xd, row by row of xu. A band that disperses is
+// bent, and its slope depends on where it is looked at.
+func SlopeOf(s *Sides, g Geometry, kappa float64, pattern func(xu, xd []float64) []float64) (float64, error) {
+	coarse := s.cells(g, kappa)
+	c := mat.NewDense(len(coarse.Xu), len(coarse.Xd), pattern(coarse.Xu, coarse.Xd))
+	m := &lineModel{s: coarse, g: g, scale: 1, unit: mat.Norm(c, 2) / math.Sqrt(float64(len(coarse.Xu)*len(coarse.Xd)))}
+	best, err := m.fit(c, []float64{m.scale, kappa, 1, 0, 0})
+	if err != nil {
+		return math.NaN(), fmt.Errorf("the predicted band's line could not be fitted: %w", err)
+	}
+	return g.Slope() / best[2], nil
 }
 
 // weighted returns the correlation of a bootstrap sample in which shot i

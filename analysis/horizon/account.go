@@ -69,6 +69,7 @@ type Account struct {
 
 	Cut        *band.Cut
 	Line       *band.Line
+	BentSlope  float64 // what the line's fit makes of the predicted band with dispersion
 	Null       *band.Null
 	Width      *temperature.Width
 	WidthBias  float64 // what the width fit makes of the predicted band, over its temperature
@@ -250,6 +251,10 @@ func (a *Account) searchBand(sides *band.Sides, g band.Geometry, in Input) {
 	a.Cut = band.NewCut(sides, g, bins)
 	var err error
 	if a.Line, err = band.FitLine(sides, g, kappa, s.Resamples/4, s.Seed); err != nil {
+		a.warn("%v", err)
+	}
+	a.BentSlope, err = band.SlopeOf(sides, g, kappa, func(xu, xd []float64) []float64 { return theory.Over(xu, xd, t/2, 1).Map(nil, t, 0) })
+	if err != nil {
 		a.warn("%v", err)
 	}
 	if a.Width, err = temperature.FitWidth(a.Cut, kappa, s.Resamples, s.Seed); err != nil {

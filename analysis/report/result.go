@@ -141,6 +141,7 @@ func (r *Run) band() object {
 	o.set("slope", number(slope))
 	o.set("slope_error", number(slopeError))
 	o.set("slope_predicted", number(g.Slope()))
+	o.set("slope_predicted_with_dispersion", number(a.BentSlope))
 	o.set("significance", number(a.Null.Significance))
 	o.set("p_value", number(a.Null.PValue))
 	o.set("strength_over_predicted", number(a.Null.Strength))

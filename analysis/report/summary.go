@@ -44,9 +44,9 @@ func (r *Run) Summary(w io.Writer) error {
 	g := a.Predicted.Geometry()
 	slope := "not found"
 	if a.Line != nil && a.Line.SlopeError > 0 {
-		slope = fmt.Sprintf("%.3g ± %.2g (ratio %.3f)", a.Line.Slope, a.Line.SlopeError, a.Line.Slope/g.Slope())
+		slope = fmt.Sprintf("%.3g ± %.2g (ratios %.2f, %.2f)", a.Line.Slope, a.Line.SlopeError, a.Line.Slope/g.Slope(), a.Line.Slope/a.BentSlope)
 	}
-	pair("slope of the band", fmt.Sprintf("%.3g", g.Slope()), slope)
+	pair("slope of the band", fmt.Sprintf("%.3g, bent by dispersion to %.3g", g.Slope(), a.BentSlope), slope)
 	pair("strength of the band", "1", fmt.Sprintf("%.2f, %.1f standard deviations above the null", a.Null.Strength, a.Null.Significance))
 	t.Flush()
 	b.WriteByte('\n')
