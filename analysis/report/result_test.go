@@ -37,7 +37,7 @@ func newRun(inLab bool) *Run {
 	return &Run{
 		Title: "a made-up run", Config: "./q.toml", Version: "9", Units: Units{Lab: inLab, Scale: round, PerXi: 50},
 		Account: &horizon.Account{
-			Time: 110, Trajectories: 2000, Measured: measured, Predicted: f, OmegaMax: 0.8, SechHeight: 2e-4,
+			Time: 110, Trajectories: 2000, Measured: measured, Predicted: f, OmegaMax: 0.8, BentSlope: -3.5, SechHeight: 2e-4,
 			Window: band.Window{UpFar: -20, UpNear: -4, DownNear: 4, DownFar: 60},
 			Line:   &band.Line{Slope: -3.9, SlopeError: 0.1}, Null: &band.Null{Strength: 0.97, Significance: 8.5, PValue: 1.0 / 1001},
 			Width:    &temperature.Width{Amplitude: 2.5e-4, Kappa: 0.4, Delay: 1.2, Offset: 1e-5, ChiSquare: 31, DegreesOfFreedom: 29, Covariance: mat.NewSymDense(4, []float64{4e-10, 0, 0, 0, 0, 1, 0, 0, 0, 0, 1, 0, 0, 0, 0, 1})},
@@ -100,7 +100,7 @@ var keys = [][2]string{
 	{"measured_flow.horizon.position", "um"}, {"measured_flow.horizon.surface_gravity", "per_s"}, {"measured_flow.horizon.hawking_temperature", "nK"},
 	{"omega_max", "per_s"},
 	{"band.amplitude", ""}, {"band.amplitude_error", ""}, {"band.delay", "ms"}, {"band.offset", ""}, {"band.chi_square", ""}, {"band.degrees_of_freedom", ""},
-	{"band.amplitude_predicted_without_dispersion", ""}, {"band.slope", ""}, {"band.slope_error", ""}, {"band.slope_predicted", ""},
+	{"band.amplitude_predicted_without_dispersion", ""}, {"band.slope", ""}, {"band.slope_error", ""}, {"band.slope_predicted", ""}, {"band.slope_predicted_with_dispersion", ""},
 	{"band.significance", ""}, {"band.p_value", ""}, {"band.strength_over_predicted", ""},
 	{"band.window.upstream_far", "um"}, {"band.window.upstream_near", "um"}, {"band.window.downstream_near", "um"}, {"band.window.downstream_far", "um"},
 	{"temperatures[]", ""}, {"temperatures[].method", ""}, {"temperatures[].value", "nK"}, {"temperatures[].low", "nK"}, {"temperatures[].high", "nK"}, {"temperatures[].trusted", ""}, {"temperatures[].why", ""},
@@ -224,7 +224,7 @@ func TestSummary(t *testing.T) {
 			"a made-up run\n2000 trajectories, read 110 ms after the start\n",
 			"density, µm⁻¹ 45 45", "velocity, mm/s 0.6 0.606 +1.0 %",
 			"surface gravity κ 450 s⁻¹", "κ/2π, as a temperature 0.7 nK",
-			"slope of the band -3.86 -3.9 ± 0.1 (ratio 1.011)",
+			"slope of the band -3.86, bent by dispersion to -3.5 -3.9 ± 0.1 (ratios 1.01, 1.11)",
 			"0.97, 8.5 standard deviations above the null",
 			"width 0.5 nK 0.4 to 0.6 nK 0.71 not trusted [2]",
 			"dispersive 0.7 nK 0.66 to 0.75 nK 1.00 trusted [3]",
@@ -262,7 +262,7 @@ func TestSummary(t *testing.T) {
 		if err := r.Summary(&b); err != nil {
 			t.Fatal(err)
 		}
-		if !strings.Contains(spaces.ReplaceAllString(b.String(), " "), "-3.86 not found") {
+		if !strings.Contains(spaces.ReplaceAllString(b.String(), " "), "bent by dispersion to -3.5 not found") {
 			t.Errorf("it does not say that no slope was found:\n%s", b.String())
 		}
 	})
