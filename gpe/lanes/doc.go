@@ -32,7 +32,10 @@
 // The portable plan is radix 4 throughout and ends in one 8 for odd powers of
 // two. Radix 8 saves sweeps but not additions, and additions are what the
 // scalar code waits for: at N = 2048 all plans of radices 4 and 8 lie within
-// 4 % of each other, at 4096 4·4·4·4·4·4 is a tenth faster than 8·8·8·8.
+// 4 % of each other, at 4096 4·4·4·4·4·4 is a tenth faster than 8·8·8·8. AVX-512
+// has the registers for radix 8: its plans are 8·…·8 with fours in between
+// (1024 = 8·4·4·8, 2048 = 8·8·4·8, 4096 = 8·8·8·8). AVX2 has not: radix 4, led
+// by a 2 for odd powers of two.
 //
 // # Phase
 //
@@ -46,30 +49,61 @@
 // All sweeps are entries in a table of functions (kernel.go), which get whole
 // arrays and the description of a pass. A kernel for a vector unit replaces
 // entries and brings the radices that suit it; layout, twiddles, order and
-// kinetic tables follow from the radices and need no change. Kernel names the
-// one in use.
+// kinetic tables follow from the radices and need no change.
+//
+// There are three: avx512 (needs AVX-512 F and DQ; one register is one point of
+// all lanes), avx2 (needs AVX2 and FMA; two registers are a point) and portable,
+// in plain Go, for everything else. The fastest that the processor can run is
+// chosen when the program starts; the environment variable TAILRACE_KERNEL
+// forces one by name, the build tag purego leaves only the portable one. Kernel
+// names the one in use.
+//
+// The assembly is written by the generator in the folder generate, a module of
+// its own so that nobody who builds the program needs what it needs; go generate
+// writes kernels_amd64.s and its stubs anew, byte for byte. The generator keeps
+// one description of every sweep for both vector units: a complex number is two
+// registers, a backward butterfly is the forward one with real and imaginary
+// parts exchanged, which costs nothing, and the factor √½ of a radix-8 butterfly
+// is multiplied in by the fused additions that end it. AVX-512 takes twiddles
+// and polynomial coefficients from memory as it multiplies.
+//
+// Beside the split step there are kernels for the other two loops that a run
+// spends time in: Combine puts noise together from its modes, Updater adds
+// products of densities to their moments.
 //
 // # Measured
 //
 // In ns per grid point, trajectory and step, one core of a server processor of
 // the AMD Zen 5 family at 3.4 GHz, Go 1.26, N = 1024 / 2048 / 4096:
 //
-//	Strang step, half phases merged, moving step     14.5 / 14.9 / 16.1
-//	the same, built with GOAMD64=v3                  12.9 / 13.8 / 14.5
-//	transform there and back (lanes)                  9.5 / 10.5 / 11.5
-//	transform there and back (gonum CmplxFFT)        49.9 / 57.8 / 59.2
-//	transform there and back (go-dsp)                99.6 / 99.0 / 86.0
+//	Strang step with a moving step, avx512           2.0 / 2.1 / 2.1
+//	the same, avx2                                   3.3 / 3.6 / 3.6
+//	the same, portable                               14.2 / 14.9 / 16.0
+//	the same in C with FFTW 3 (Debian, patient
+//	plans, eight at a time, polynomial sincos)       4.0 / 4.5 / 4.9
+//	transform there and back, portable               9.5 / 10.5 / 11.5
+//	transform there and back, gonum CmplxFFT         49.9 / 57.8 / 59.2
+//	transform there and back, go-dsp                 99.6 / 99.0 / 86.0
 //
-// and at N = 2048: Propagate 9.7, Phase 5.2, PhaseLaw 5.3 (cubic) and 8.4
-// (swollen), StepTable.Fill 0.11 when the batch shares it. Propagate does 59
-// additions a point, of which this processor can start two a cycle: 29.5 of
-// the 32.5 cycles that it takes.
+// and at N = 2048, avx512 / avx2 / portable: Propagate 1.25 / 2.24 / 9.7, Phase
+// 0.69 / 1.38 / 5.1, swollen law 1.53 / 3.08 / 7.7, StepTable.Fill 0.11 when the
+// batch shares it. Combine does 51 / 44 / 4.6 GFLOP/s, Updater 60 / 36 / 4.5
+// (gonum's Syrk 10). Two workers on two cores carry 1.98 times the trajectories
+// of one.
+//
+// The bound: at N = 2048 Propagate does 56 vector operations a point on AVX-512
+// forwards and backwards, Phase 31, of which this processor can start two a
+// cycle: 1.6 ns at 3.4 GHz for eight lanes, of the 2.05 that it takes. What is
+// left is loads and stores: eight sweeps over an array that fills a quarter of
+// the second-level cache.
 //
 // To repeat:
 //
-//	go test ./gpe/lanes -run '^$' -bench 'SplitStep|Parts|Transform'
+//	go test ./gpe/lanes -run '^$' -bench 'SplitStep|Parts|Transform|Combine|Updater'
+//	TAILRACE_KERNEL=avx2 go test ./gpe/lanes -run '^$' -bench SplitStep
 //
-// Accuracy: relative L2 error 3e-15 to 1.3e-14 after 100 steps at N = 64
-// against 128-bit arithmetic, norm drift 8e-14 in 1000 steps at N = 512
-// (go test -v prints both).
+// Accuracy, all kernels: relative L2 error 3e-15 to 1.3e-14 after 100 steps at
+// N = 64 against 128-bit arithmetic, norm drift 1.7e-13 in 1000 steps at N = 512,
+// phases within 3.1e-16 (go test -v prints them); kernels agree with each other
+// to 1e-13 after 100 steps.
 package lanes
