@@ -23,6 +23,11 @@ type Noise interface {
 	Sample(b *lanes.Batch, seed uint64, first int) error
 	// Modes returns how many modes carry noise.
 	Modes() int
+	// Directions returns how many independent directions the noise has, two to
+	// a mode, and Direct fills the lanes of b with those from first on, each
+	// times its standard deviation, and zeros beyond the last.
+	Directions() int
+	Direct(b *lanes.Batch, first int)
 	// Describe says what the modes are.
 	Describe() string
 }
@@ -76,6 +81,8 @@ type PlaneWaves struct {
 	place   []int // of each Fourier index
 	modes   int
 	cutoff  float64
+	// carriers lists the places of the waves that carry noise.
+	carriers []int
 }
 
 // NewPlaneWaves prepares the noise of density 1 with sound speed c, at
@@ -104,6 +111,7 @@ func NewPlaneWaves(ground *Ground, c, temperature, atomsPerLength, cutoff float6
 		sd := occupation(energy, temperature) * scale
 		w.plus[p], w.minus[p] = math.Sqrt(e/energy)*sd, math.Sqrt(energy/e)*sd
 		w.modes++
+		w.carriers = append(w.carriers, p)
 	}
 	return w, nil
 }

@@ -161,6 +161,21 @@ func (w *Walker) Leg(b *lanes.Batch, i int) {
 // local applies exp(−i dt (V + g f(|ψ|²−s))) at time t.
 func (w *Walker) local(b *lanes.Batch, t, dt float64) {
 	p := w.p
+	w.tables(t, dt)
+	if p.Law.Swelling() == 0 {
+		lanes.Phase(b, w.v, w.g)
+	} else {
+		lanes.PhaseLaw(b, w.v, w.g, p.Ordering, p.Law)
+	}
+	if w.heedWork {
+		w.addWork(b, t, dt)
+	}
+}
+
+// tables brings v and g, in units of π for a flow over dt, to time t; for the
+// cubic law v takes in the ordering.
+func (w *Walker) tables(t, dt float64) {
+	p := w.p
 	scale := dt / math.Pi
 	vSteady, gSteady := p.Landscape.Steady(t)
 	refill := false
@@ -172,25 +187,18 @@ func (w *Walker) local(b *lanes.Batch, t, dt float64) {
 		}
 		refill = true
 	}
-	if refill || w.vScale != scale || !vSteady {
-		p.Landscape.Potential(w.v, t, scale)
-		w.vScale = 0
-		if vSteady {
-			w.vScale = scale
-		}
-		if p.Law.Swelling() == 0 {
-			for j, s := range p.Ordering {
-				w.v[j] -= w.g[j] * s
-			}
-		}
+	if !refill && w.vScale == scale && vSteady {
+		return
+	}
+	p.Landscape.Potential(w.v, t, scale)
+	w.vScale = 0
+	if vSteady {
+		w.vScale = scale
 	}
 	if p.Law.Swelling() == 0 {
-		lanes.Phase(b, w.v, w.g)
-	} else {
-		lanes.PhaseLaw(b, w.v, w.g, p.Ordering, p.Law)
-	}
-	if w.heedWork {
-		w.addWork(b, t, dt)
+		for j, s := range p.Ordering {
+			w.v[j] -= w.g[j] * s
+		}
 	}
 }
 

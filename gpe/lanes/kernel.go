@@ -20,6 +20,7 @@ type kernel struct {
 	phaseShifted func(re, im, v, g, s []float64)
 	phaseSwollen func(re, im, v, g, s []float64, swelling, scale float64)
 	damp         func(re, im, d []float64)
+	mix          func(re, im, matrix []float64)
 	combine      func(dst, f, beta []float64)
 	// tiles makes tilesAtOnce neighbouring tiles of an Updater's product.
 	tiles       func(dst, a, b []float64, rows int)
@@ -49,6 +50,7 @@ var portable = kernel{
 	phaseShifted: phaseShifted,
 	phaseSwollen: phaseSwollen,
 	damp:         damp,
+	mix:          mix,
 	combine:      combine,
 	tiles:        tile,
 	tilesAtOnce:  1,
