@@ -44,6 +44,11 @@ type Cut struct {
 	Shot  *mat.Dense // [shots×bins], a shot's contribution
 	Mean  []float64  // g₂ − 1
 	Error []float64  // its standard error
+
+	kept   []int     // the bins that hold pairs
+	ranges [][2]int  // of downstream points, for each upstream point and bin
+	down   int       // downstream points
+	base   []float64 // taken off, or nil
 }
 
 // NewCut averages along the band of geometry g.
@@ -61,7 +66,7 @@ func NewCut(s *Sides, g Geometry, bins Bins) *Cut {
 		}
 	}
 	var keep []int
-	c := &Cut{Bins: bins}
+	c := &Cut{Bins: bins, ranges: ranges, down: nd}
 	for b, n := range pairs {
 		if n > 0 {
 			keep = append(keep, b)
@@ -69,6 +74,7 @@ func NewCut(s *Sides, g Geometry, bins Bins) *Cut {
 			c.Pairs = append(c.Pairs, n)
 		}
 	}
+	c.kept = keep
 	c.Shot = mat.NewDense(s.Shots(), len(keep), nil)
 	prefix := make([]float64, nd+1)
 	for m := range s.Shots() {
@@ -86,7 +92,44 @@ func NewCut(s *Sides, g Geometry, bins Bins) *Cut {
 		}
 	}
 	c.Mean, c.Error = columnStatistics(c.Shot)
+	if s.Noiseless {
+		var size float64
+		for _, v := range c.Mean {
+			size = math.Max(size, math.Abs(v))
+		}
+		for k := range c.Error {
+			c.Error[k] = size / 100
+		}
+	}
 	return c
+}
+
+// Project returns the averages of a map over the window, row by row of the
+// upstream points, in the cut's bins.
+func (c *Cut) Project(pattern []float64) []float64 {
+	mean := make([]float64, len(c.S))
+	for k, b := range c.kept {
+		for i := 0; i < len(pattern)/c.down; i++ {
+			r := c.ranges[i*c.Bins.Count+b]
+			for _, v := range pattern[i*c.down+r[0] : i*c.down+r[1]] {
+				mean[k] += v
+			}
+		}
+		mean[k] /= float64(c.Pairs[k])
+	}
+	return mean
+}
+
+// Less returns the cut with a profile taken off its mean: of what is known to
+// lie under the band.
+func (c *Cut) Less(profile []float64) *Cut {
+	o := *c
+	o.Mean = make([]float64, len(c.Mean))
+	for k, v := range c.Mean {
+		o.Mean[k] = v - profile[k]
+	}
+	o.base = profile
+	return &o
 }
 
 // firstAtLeast returns the first index of xd whose delay with x is at least s.
@@ -121,7 +164,10 @@ func (c *Cut) Covariance() *mat.SymDense {
 	m := float64(rows)
 	cov := mat.NewSymDense(cols, nil)
 	cov.SymOuterK(1/(m*(m-1)), c.Shot.T())
-	mean := mat.NewVecDense(cols, c.Mean)
+	mean := mat.NewVecDense(cols, append([]float64(nil), c.Mean...))
+	if c.base != nil {
+		mean.AddVec(mean, mat.NewVecDense(cols, c.base))
+	}
 	cov.SymRankOne(cov, -(m-1)/(m*m), mean)
 	return cov
 }
@@ -138,5 +184,8 @@ func (c *Cut) Resample(dst []float64, r *rand.Rand) {
 	}
 	for k := range dst {
 		dst[k] /= float64(rows - 1)
+		if c.base != nil {
+			dst[k] -= c.base[k]
+		}
 	}
 }

@@ -59,6 +59,9 @@ type Sides struct {
 	Xu, Xd []float64  // positions, [nu], [nd]
 	U, D   *mat.Dense // [shots×nu], [shots×nd]
 	Nu, Nd float64    // mean density of each window, in n₀
+	// Noiseless marks sides whose rows are no shots (NoiselessSides): there is
+	// no chance in their correlation, and no scatter to weigh it by.
+	Noiseless bool
 }
 
 // minPoints is the least number of points on a side with which a band's

@@ -260,7 +260,7 @@ func (a *Account) searchBand(sides *band.Sides, g band.Geometry, in Input) {
 	if a.Width, err = temperature.FitWidth(a.Cut, kappa, s.Resamples, s.Seed); err != nil {
 		a.warn("%v", err)
 	}
-	if a.Dispersive, err = temperature.FitDispersive(a.Cut, sides, g, theory, t, s.Resamples, s.Seed); err != nil {
+	if a.Dispersive, err = temperature.FitDispersive(a.Cut, sides, g, theory, t, temperature.Sampling{Resamples: s.Resamples, Seed: s.Seed}); err != nil {
 		a.warn("%v", err)
 	}
 	if a.Dispersive != nil {

@@ -3,7 +3,6 @@ package temperature
 import (
 	"fmt"
 	"math"
-	"math/rand/v2"
 
 	"tailrace/analysis/band"
 	"tailrace/analysis/fit"
@@ -13,40 +12,23 @@ import (
 // Dispersive is the fit of the band that keeps the dispersion of the waves
 // (bogoliubov.Band) to the cut, with temperature, delay and offset free. Its
 // height is given by theory, so the density must be known: in a simulation it
-// is.
+// is, in a measurement its error goes into the interval (Sampling).
 type Dispersive struct {
 	T, Delay, Offset float64
-	Samples          []float64 // bootstrap of T
+	Samples          []float64 // of T
 	Failed           int
 	profile          *bogoliubov.Profile
 }
 
 // FitDispersive fits the cut of s, made along geometry g, starting from
-// temperature t, and resamples shots.
-func FitDispersive(c *band.Cut, s *band.Sides, g band.Geometry, theory *bogoliubov.Band, t float64, resamples int, seed uint64) (*Dispersive, error) {
+// temperature t, and finds the interval as how says.
+func FitDispersive(c *band.Cut, s *band.Sides, g band.Geometry, theory *bogoliubov.Band, t float64, how Sampling) (*Dispersive, error) {
 	span := math.Max(math.Abs(c.S[0]), math.Abs(c.S[len(c.S)-1]))
 	coldest, hottest := t/8, t*8
-	window := theory.Over(s.Xu, s.Xd, coldest, span)
-	index := make([]int, c.Bins.Count)
-	for b := range index {
-		index[b] = -1
-	}
-	for k, centre := range c.S {
-		index[int(math.Round((centre-c.Bins.Centre(0))/c.Bins.Width))] = k
-	}
-	d := &Dispersive{profile: window.Profile(len(c.S), func(i, j int) int {
-		b := int(math.Floor((g.Delay(s.Xu[i], s.Xd[j]) - c.Bins.Low) / c.Bins.Width))
-		if b < 0 || b >= len(index) {
-			return -1
-		}
-		return index[b]
-	})}
-	unit := 0.0
-	for _, v := range c.Mean {
-		unit = math.Max(unit, math.Abs(v))
-	}
+	d := &Dispersive{profile: theory.Over(s.Xu, s.Xd, coldest, span).Profile(len(c.S), groups(c, s, g))}
+	unit := largest(c.Mean)
 	model := make([]float64, len(c.S))
-	solve := func(mean []float64, start []float64) (fit.Result, error) {
+	solve := func(mean, start []float64, height float64) (fit.Result, error) {
 		r, err := fit.Solve(fit.Problem{
 			Count: len(c.S),
 			Start: start,
@@ -56,25 +38,25 @@ func FitDispersive(c *band.Cut, s *band.Sides, g band.Geometry, theory *bogoliub
 			Residuals: func(dst, p []float64) {
 				d.profile.At(model, math.Exp(p[0]), p[1])
 				for b, v := range model {
-					dst[b] = (v + p[2]*unit - mean[b]) / c.Error[b]
+					dst[b] = (height*v + p[2]*unit - mean[b]) / c.Error[b]
 				}
 			},
-		}, fit.Options{FunctionTolerance: 1e-10, StepTolerance: 1e-8, MaxIterations: 200})
+		}, options)
 		if err == nil && (r.AtBound[0] || r.AtBound[1]) {
 			err = fmt.Errorf("the fit left the range of temperatures or delays: T = %.3g, delay %.3g", math.Exp(r.Params[0]), r.Params[1])
 		}
 		return r, err
 	}
-	best, err := solve(c.Mean, []float64{math.Log(t), 0, 0})
+	best, err := solve(c.Mean, []float64{math.Log(t), 0, 0}, 1)
 	if err != nil {
 		return nil, fmt.Errorf("the dispersive band could not be fitted: %w", err)
 	}
 	d.T, d.Delay, d.Offset = math.Exp(best.Params[0]), best.Params[1], best.Params[2]*unit
-	r := rand.New(rand.NewPCG(seed, 0xd15))
+	r := how.source(0xd15)
 	mean := make([]float64, len(c.S))
-	for range resamples {
+	for range how.Resamples {
 		c.Resample(mean, r)
-		p, err := solve(mean, best.Params)
+		p, err := solve(mean, best.Params, how.height(r))
 		if err != nil {
 			d.Failed++
 			continue
@@ -83,6 +65,8 @@ func FitDispersive(c *band.Cut, s *band.Sides, g band.Geometry, theory *bogoliub
 	}
 	return d, nil
 }
+
+var options = fit.Options{FunctionTolerance: 1e-10, StepTolerance: 1e-8, MaxIterations: 200}
 
 // Temperature returns T with its bootstrap interval.
 func (d *Dispersive) Temperature() (value, low, high float64) {

@@ -218,7 +218,7 @@ func TestDispersive(t *testing.T) {
 	for k := range runs {
 		s := src.sides(t, shots, uint64(500+k))
 		c := band.NewCut(s, geometry, band.NewBins(geometry, s.Xu, s.Xd, 9/(2*math.Pi*truth)))
-		d, err := FitDispersive(c, s, geometry, theory, truth*1.3, 40, uint64(k))
+		d, err := FitDispersive(c, s, geometry, theory, truth*1.3, Sampling{Resamples: 40, Seed: uint64(k)})
 		if err != nil {
 			t.Fatalf("set %d: %v", k, err)
 		}
@@ -270,7 +270,7 @@ func TestDispersiveExact(t *testing.T) {
 	for b := range c.Mean {
 		c.Mean[b] += offset
 	}
-	d, err := FitDispersive(c, s, geometry, theory, 0.04, 0, 1)
+	d, err := FitDispersive(c, s, geometry, theory, 0.04, Sampling{Resamples: 0, Seed: 1})
 	if err != nil {
 		t.Fatal(err)
 	}

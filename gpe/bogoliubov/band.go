@@ -31,6 +31,7 @@ type Band struct {
 	top      float64 // k_d at ω_max
 	limit    float64 // ω_max
 	upTop    float64 // |k_u| at ω_max
+	response func(k float64) float64
 
 	rules [bandLevels]struct {
 		once sync.Once
@@ -72,6 +73,11 @@ func NewBand(up, down flow.State, atomsPerLength float64) *Band {
 	return b
 }
 
+// SetResponse makes the band that of pictures in which a density wave k appears
+// with the given factor: the response of imaging and pixels. It is called
+// before the band is used.
+func (b *Band) SetResponse(response func(k float64) float64) { b.response = response }
+
 // makeRule returns the Gauss–Legendre rule of n points in y, where
 // k_d = k_top(1 − y²): at the top of the branch the group speed vanishes in
 // proportion to y², and √w_d dk is smooth in y.
@@ -95,6 +101,9 @@ func (b *Band) makeRule(n int) bandRule {
 		r.omega[i], r.up[i], r.down[i] = omega, ku, kd
 		// dω = w_d dk_d = w_d · 2 k_top y dy.
 		r.weight[i] = math.Sqrt(su*sd*math.Max(wd, 0)/wu) * 2 * b.top * yi * w[i] / (math.Pi * b.atoms)
+		if b.response != nil {
+			r.weight[i] *= b.response(ku) * b.response(kd)
+		}
 	}
 	return r
 }
@@ -150,7 +159,7 @@ type Window struct {
 	rule *bandRule
 	x    blas64.General // points upstream × 2 waves: cos(k_u x), sin(k_u x)
 	xp   blas64.General // points downstream × 2 waves: cos(k_d x'), sin(k_d x')
-	work blas64.General // x with the weights of T and t0
+	work blas64.General // x with the weights of the pairing and t0
 }
 
 // Over returns the band over the points x × xp, for temperatures down to
@@ -193,25 +202,29 @@ func waves(x, k []float64) blas64.General {
 // fastest, and returns it; a nil dst is allocated. T and t0 must lie in the
 // range given to Over. A Window may not be used by two goroutines at once.
 func (w *Window) Map(dst []float64, T, t0 float64) []float64 {
-	mustBeWarm(T)
+	return w.Paired(dst, thermalPairing(w.rule.omega, T), t0)
+}
+
+// Paired is Map for a given pairing ⟨b_u b_d2⟩ at the window's frequencies.
+func (w *Window) Paired(dst []float64, pairing []complex128, t0 float64) []float64 {
 	rows, cols := w.x.Rows, w.xp.Rows
 	if dst == nil {
 		dst = make([]float64, rows*cols)
 	}
-	if len(dst) != rows*cols {
-		panic("bogoliubov: the map has the wrong length")
+	if len(dst) != rows*cols || len(pairing) != len(w.rule.omega) {
+		panic("bogoliubov: the map or the pairing has the wrong length")
 	}
-	// −a cos(α − β) = (−a cos α) cos β + (−a sin α) sin β with
-	// α = k_u x + ωt₀, β = k_d x'.
+	// Re[p e^{i(α − β)}] = (a cos α − b sin α) cos β + (a sin α + b cos α) sin β
+	// with p e^{iωt₀} = a + ib, α = k_u x, β = k_d x'.
 	n := w.x.Stride
 	for q, omega := range w.rule.omega {
-		a := -w.rule.weight[q] * thermal(omega, T)
 		sin, cos := math.Sincos(omega * t0)
-		sin, cos = a*sin, a*cos
+		p := complex(w.rule.weight[q], 0) * pairing[q] * complex(cos, sin)
+		a, b := real(p), imag(p)
 		for at := 2 * q; at < len(w.x.Data); at += n {
 			c, s := w.x.Data[at], w.x.Data[at+1]
-			w.work.Data[at] = c*cos - s*sin
-			w.work.Data[at+1] = s*cos + c*sin
+			w.work.Data[at] = a*c - b*s
+			w.work.Data[at+1] = a*s + b*c
 		}
 	}
 	blas64.Gemm(blas.NoTrans, blas.Trans, 1, w.work, w.xp, 0,

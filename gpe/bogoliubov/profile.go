@@ -50,17 +50,22 @@ func (w *Window) Profile(groups int, group func(i, j int) int) *Profile {
 // At sets dst to g₂ − 1 of each group for temperature T and delay t0, within
 // the range given to Over, and returns it; nil allocates.
 func (p *Profile) At(dst []float64, T, t0 float64) []float64 {
-	mustBeWarm(T)
+	return p.Paired(dst, thermalPairing(p.omega, T), t0)
+}
+
+// Paired is At for a given pairing ⟨b_u b_d2⟩ at the profile's frequencies.
+func (p *Profile) Paired(dst []float64, pairing []complex128, t0 float64) []float64 {
 	if dst == nil {
 		dst = make([]float64, p.groups)
 	}
 	clear(dst)
 	n := len(p.omega)
 	for q, omega := range p.omega {
-		a := -p.weight[q] * thermal(omega, T)
 		sin, cos := math.Sincos(omega * t0)
-		for b := range dst {
-			dst[b] += a * (p.cos[b*n+q]*cos - p.sin[b*n+q]*sin)
+		z := complex(p.weight[q], 0) * pairing[q] * complex(cos, sin)
+		a, b := real(z), imag(z)
+		for g := range dst {
+			dst[g] += a*p.cos[g*n+q] - b*p.sin[g*n+q]
 		}
 	}
 	return dst

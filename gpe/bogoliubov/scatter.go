@@ -95,6 +95,9 @@ type Scattering struct {
 	// Energy of the ingoing waves u, d1, d2 in the frame of the fluid they
 	// come in: what their thermal population depends on.
 	Comoving [3]float64
+	// Dying is, above ω_max, the amplitude U+V of the wave exp(ikx) that dies out
+	// downstream, for ingoing waves u and d1.
+	Dying [3]complex128
 	// UnitarityError is the largest element of S†ηS − η in size: 0 but for
 	// errors of integration.
 	UnitarityError float64
@@ -173,13 +176,14 @@ func (s *Scatterer) At(omega float64) (*Scattering, error) {
 	left := block{count: 3}
 	left.y[0] = dying.at(0) // its own amplitude does not matter
 	left.y[1], left.y[2] = inU.at(s.left-s.origin), outU.at(s.left-s.origin)
-	if !m.carry(&left, s.left, s.meet, tame) {
+	if !m.carry(&left, s.left, s.meet, (&tamer{}).tame) {
 		return nil, ErrNotIntegrated
 	}
 	// From downstream: four plane waves, or above ω_max two and a dying one.
 	right := block{count: 4}
 	x := s.right - s.origin
 	below := out2.norm != 0
+	dying2 := tamer{scale: 1}
 	if below {
 		right.y = [4]solution{out2.at(x), out1.at(x), in1.at(x), in2.at(x)}
 		if !m.carry(&right, s.right, s.meet, nil) {
@@ -187,8 +191,8 @@ func (s *Scatterer) At(omega float64) (*Scattering, error) {
 		}
 	} else {
 		right.count = 3
-		right.y = [4]solution{out2.at(0), out1.at(x), in1.at(x)}
-		if !m.carry(&right, s.right, s.meet, tame) {
+		right.y = [4]solution{out2.at(x), out1.at(x), in1.at(x)}
+		if !m.carry(&right, s.right, s.meet, dying2.tame) {
 			return nil, ErrNotIntegrated
 		}
 	}
@@ -212,7 +216,13 @@ func (s *Scatterer) At(omega float64) (*Scattering, error) {
 		r.S[U][in], r.S[D1][in] = b[1][in], b[2][in]
 		if below {
 			r.S[D2][in] = b[3][in]
+			continue
 		}
+		r.Dying[in] = b[3][in] - b[2][in]*dying2.along[1]
+		if in == D1 {
+			r.Dying[in] -= dying2.along[2]
+		}
+		r.Dying[in] *= complex(dying2.scale, 0)
 	}
 	r.UnitarityError = r.unitarity(below)
 	return r, nil
@@ -240,16 +250,25 @@ func (s *Scattering) unitarity(below bool) (worst float64) {
 	return worst
 }
 
-// tame takes the first solution, which grows, out of the others, and keeps its
-// size.
-func tame(b *block) {
+// tamer takes the first solution, which grows, out of the others, and keeps its
+// size. It remembers how, so that amplitudes can be said in terms of the
+// solutions as they were:
+//
+//	y₀ = scale·y₀(original),  y_i = y_i(original) − along_i·y₀.
+type tamer struct {
+	scale float64
+	along [4]complex128
+}
+
+func (t *tamer) tame(b *block) {
 	var norm float64
 	for _, z := range b.y[0] {
 		norm += square(z)
 	}
-	scale := complex(1/math.Sqrt(norm), 0)
+	factor := complex(1/math.Sqrt(norm), 0)
+	t.scale *= real(factor)
 	for c := range b.y[0] {
-		b.y[0][c] *= scale
+		b.y[0][c] *= factor
 	}
 	for i := 1; i < b.count; i++ {
 		var along complex128
@@ -259,6 +278,7 @@ func tame(b *block) {
 		for c, z := range b.y[0] {
 			b.y[i][c] -= along * z
 		}
+		t.along[i] = t.along[i]/factor + along
 	}
 }
 

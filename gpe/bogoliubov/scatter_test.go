@@ -170,17 +170,19 @@ func TestPredictedBandOfSmoothHorizon(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	predicted, err := NewPredicted(p, 100, 0)
-	if err != nil {
-		t.Fatal(err)
-	}
 	up, down, h := p.Ends()
 	thermal := NewBand(up, down, 100)
 	x, xp := []float64{-60}, []float64{50, 55, 60, 65, 70, 75, 80}
-	got, err := predicted.Over(x, xp)
+	scatterer, err := NewScatterer(p)
 	if err != nil {
 		t.Fatal(err)
 	}
+	window := thermal.Over(x, xp, h.Temperature, 0)
+	pairing, err := window.Pairing(scatterer, 0)
+	if err != nil {
+		t.Fatal(err)
+	}
+	got := window.Paired(nil, pairing, 0)
 	var height, shape float64
 	for j, v := range got {
 		height = math.Max(height, math.Abs(v))
