@@ -120,6 +120,13 @@ func (c *Cut) Project(pattern []float64) []float64 {
 	return mean
 }
 
+// With returns the cut with another mean, such as a predicted one.
+func (c *Cut) With(mean []float64) *Cut {
+	o := *c
+	o.Mean = mean
+	return &o
+}
+
 // Less returns the cut with a profile taken off its mean: of what is known to
 // lie under the band.
 func (c *Cut) Less(profile []float64) *Cut {

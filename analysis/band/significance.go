@@ -38,7 +38,8 @@ func Sech2(y float64) float64 {
 // Shuffle measures the strength, the least-squares amplitude of the template's
 // pattern in the map, and its distribution when the downstream window of each shot is
 // exchanged for that of another: every statistic of each side is kept and only
-// what joins them is lost. The shuffles are drawn from seed.
+// what joins them is lost. The shuffles are drawn from seed; without any,
+// significance and p-value are NaN.
 func Shuffle(s *Sides, template *mat.Dense, shuffles int, seed uint64) *Null {
 	var weighted mat.Dense // [shots×nd]
 	weighted.Mul(s.U, template)
@@ -66,6 +67,10 @@ func Shuffle(s *Sides, template *mat.Dense, shuffles int, seed uint64) *Null {
 		if v >= n.Strength {
 			atLeast++
 		}
+	}
+	if shuffles == 0 {
+		n.Significance, n.PValue = math.NaN(), math.NaN()
+		return n
 	}
 	mean, sd := stat.MeanStdDev(n.Shuffled, nil)
 	n.Significance = (n.Strength - mean) / sd

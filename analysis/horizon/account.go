@@ -19,6 +19,7 @@ type Input struct {
 	Sums      *moments.Sums
 	Shots     moments.Shots // |ψ|² of every trajectory at the time of the account
 	Current   []float64     // mean current there
+	Moments   *gpe.Moments  // instead of Sums, Shots and Current: the ensemble without sampling error
 	Time      float64
 	Frame     Frame
 	Predicted flow.Profile // nil: the flow over the step at the measured density
@@ -38,6 +39,9 @@ type Settings struct {
 	Resamples int     // bootstrap
 	Shuffles  int     // null
 	Seed      uint64
+	// HeightError is the relative standard error of the predicted height of the
+	// band (temperature.Sampling).
+	HeightError float64
 }
 
 // DefaultSettings are what `run` uses.
@@ -58,6 +62,7 @@ func (f Flow) Geometry() band.Geometry {
 type Account struct {
 	Time         float64
 	Trajectories int
+	Noiseless    bool // drawn from gpe.Moments: there is no chance in it
 	Measured     Flow // of the ensemble: windows' means
 	Predicted    Flow // of theory
 	MeanField    *Profile
@@ -67,19 +72,32 @@ type Account struct {
 	OmegaMax     float64
 	SechHeight   float64 // predicted A of the dispersionless band
 
+	// Scattered is the temperature of the predicted flow's emission at low
+	// frequency, and ScatteredError how well that limit is known.
+	Scattered, ScatteredError float64
+
 	Cut        *band.Cut
 	Line       *band.Line
 	BentSlope  float64 // what the line's fit makes of the predicted band with dispersion
 	Null       *band.Null
 	Width      *temperature.Width
-	WidthBias  float64 // what the width fit makes of the predicted band, over its temperature
 	Dispersive *temperature.Dispersive
+	Coherence  *temperature.Coherence
+	Template   *temperature.Template
 	Readings   []temperature.Reading
+	// Bias is, for each method, what it makes of the predicted band in this
+	// window, over Scattered; a method that cannot read it is not there.
+	Bias map[string]float64
+	// PredictedCut is the predicted band in the cut's bins, and
+	// PredictedCoherence |⟨b_u b_d2⟩| as the window shows it.
+	PredictedCut, PredictedCoherence []float64
 
 	Ripples  []Ripple
 	Warnings []string
 
 	meanCurrent []float64 // of the mean field, in the grid's frame
+	profile     flow.Profile
+	scatterer   *bogoliubov.Scatterer
 }
 
 // PredictedTemperature returns κ/2π of the predicted flow.
@@ -126,19 +144,25 @@ func Draw(in Input) (*Account, error) {
 	if err != nil {
 		return nil, err
 	}
-	a.Trajectories = in.Sums.Count
 	x := a.fromHorizon()
-	if a.Map, err = correlation.New(in.Sums, in.Shots, x, ordering(in.Problem, a.MeanField.Density, a.meanCurrent)); err != nil {
-		return nil, err
+	order := ordering(in.Problem, a.MeanField.Density, a.meanCurrent)
+	var sides *band.Sides
+	if m := in.Moments; m != nil {
+		a.Noiseless, in.Current = true, m.Current
+		a.Map = correlation.NewNoiseless(m, x, order)
+		sides, err = band.NoiselessSides(m, x, a.Window)
+	} else {
+		a.Trajectories = in.Sums.Count
+		if a.Map, err = correlation.New(in.Sums, in.Shots, x, order); err != nil {
+			return nil, err
+		}
+		sides, err = band.NewSides(in.Shots, x, a.Map.MeanDensity, a.Window)
 	}
-	sides, err := band.NewSides(in.Shots, x, a.Map.MeanDensity, a.Window)
 	if err != nil {
 		return nil, err
 	}
 	a.measure(in)
-	a.searchBand(sides, a.Predicted.Geometry(), in)
-	a.judge(in)
-	return a, nil
+	return a, a.read(sides, in)
 }
 
 // predict fills in the theory of the flow.
@@ -155,7 +179,13 @@ func (a *Account) predict(in Input) error {
 		profile = t
 	}
 	a.Predicted.Upstream, a.Predicted.Downstream, a.Predicted.Horizon = profile.Ends()
-	return nil
+	a.profile = profile
+	var err error
+	if a.scatterer, err = bogoliubov.NewScatterer(profile); err != nil {
+		return err
+	}
+	a.Scattered, a.ScatteredError, err = a.scatterer.LowFrequencyTemperature()
+	return err
 }
 
 // even is how far the mean field's density may depart from that beside the
@@ -236,115 +266,4 @@ func (a *Account) measure(in Input) {
 
 func (a *Account) warn(format string, args ...any) {
 	a.Warnings = append(a.Warnings, fmt.Sprintf(format, args...))
-}
-
-// searchBand measures the band in the window in every way there is.
-func (a *Account) searchBand(sides *band.Sides, g band.Geometry, in Input) {
-	s := in.Settings
-	kappa := a.Predicted.Horizon.SurfaceGravity
-	t := a.PredictedTemperature()
-	theory := bogoliubov.NewBand(a.Predicted.Upstream, a.Predicted.Downstream, in.Problem.AtomsPerLength)
-	pattern := theory.Over(sides.Xu, sides.Xd, t/2, 1).Map(nil, t, 0)
-	a.Null = band.Shuffle(sides, band.Template(sides, pattern), s.Shuffles, s.Seed)
-
-	bins := band.NewBins(g, sides.Xu, sides.Xd, s.Span/kappa)
-	a.Cut = band.NewCut(sides, g, bins)
-	var err error
-	if a.Line, err = band.FitLine(sides, g, kappa, s.Resamples/4, s.Seed); err != nil {
-		a.warn("%v", err)
-	}
-	a.BentSlope, err = band.SlopeOf(sides, g, kappa, func(xu, xd []float64) []float64 { return theory.Over(xu, xd, t/2, 1).Map(nil, t, 0) })
-	if err != nil {
-		a.warn("%v", err)
-	}
-	if a.Width, err = temperature.FitWidth(a.Cut, kappa, s.Resamples, s.Seed); err != nil {
-		a.warn("%v", err)
-	}
-	if a.Dispersive, err = temperature.FitDispersive(a.Cut, sides, g, theory, t, temperature.Sampling{Resamples: s.Resamples, Seed: s.Seed}); err != nil {
-		a.warn("%v", err)
-	}
-	if a.Dispersive != nil {
-		a.WidthBias = temperature.WidthBias(a.Cut, a.Dispersive.Predicted(t), kappa) / t
-	}
-}
-
-// Limits of trust. The significance is common practice, no source; the bias is
-// a third of the interval a good run reaches.
-const (
-	significant = 5
-	fairWidth   = 0.1  // bias of the width fit on the predicted band
-	fairTop     = 0.5  // T_H/ω_max beyond which a thermal spectrum is cut off
-	fairFlow    = 0.03 // how far densities and velocities may be from the theory's
-)
-
-// offFlow says how the flow in the windows differs from the one on which the
-// reading of the band rests, or nothing.
-func (a *Account) offFlow(in Input) string {
-	if in.Predicted == nil {
-		return "along a harmonic cloud density, speeds and temperature change while the band is made, and it is read as if they did not"
-	}
-	for _, p := range []struct {
-		what             string
-		measured, theory float64
-	}{
-		{"density upstream", a.Measured.Upstream.Density, a.Predicted.Upstream.Density},
-		{"velocity upstream", a.Measured.Upstream.Velocity, a.Predicted.Upstream.Velocity},
-		{"density downstream", a.Measured.Downstream.Density, a.Predicted.Downstream.Density},
-		{"velocity downstream", a.Measured.Downstream.Velocity, a.Predicted.Downstream.Velocity},
-	} {
-		if off := p.measured/p.theory - 1; !(math.Abs(off) <= fairFlow) {
-			return fmt.Sprintf("the %s is %.1f %% from the theory's, and the band's speeds with it", p.what, 100*off)
-		}
-	}
-	return ""
-}
-
-// judge turns fits into readings and says which to trust.
-func (a *Account) judge(in Input) {
-	seen := a.Null.Significance >= significant
-	off := a.offFlow(in)
-	weak := fmt.Sprintf("the band stands out by %.1f standard deviations only, %d are asked for", a.Null.Significance, significant)
-	if !seen {
-		a.warn("%s: about %.0f trajectories would do", weak, math.Ceil(float64(a.Trajectories)*math.Pow(significant/math.Max(a.Null.Significance, 0.5), 2)/100)*100)
-	}
-	if a.Width != nil {
-		r := temperature.Reading{Method: "width"}
-		r.Value, r.Low, r.High = a.Width.Temperature()
-		switch {
-		case a.WidthBias == 0 || math.IsNaN(a.WidthBias):
-			r.Why = "what dispersion does to the width could not be computed"
-		case math.Abs(a.WidthBias-1) > fairWidth:
-			r.Why = fmt.Sprintf("dispersion spreads the band on its way: a width fit to the predicted band in this window reads %.2f of its temperature", a.WidthBias)
-		case !seen:
-			r.Why = weak
-		case off != "":
-			r.Why = off
-		default:
-			r.Trusted, r.Why = true, fmt.Sprintf("a width fit to the predicted band in this window reads %.2f of its temperature", a.WidthBias)
-		}
-		a.Readings = append(a.Readings, r)
-	}
-	if a.Dispersive != nil {
-		r := temperature.Reading{Method: "dispersive"}
-		r.Value, r.Low, r.High = a.Dispersive.Temperature()
-		ratio := a.PredictedTemperature() / a.OmegaMax
-		switch {
-		case !seen:
-			r.Why = weak
-		case off != "":
-			r.Why = off
-		case ratio > fairTop:
-			r.Why = fmt.Sprintf("T_H is %.2f of ω_max: so much of the thermal spectrum is cut off that its temperature is not defined", ratio)
-		case math.IsNaN(r.Low):
-			r.Why = "the bootstrap failed"
-		default:
-			r.Trusted, r.Why = true, "keeps the dispersion, with the height given by the density; takes the spectrum for thermal, which a sharp step's is not quite (up to 15 % above the low-frequency temperature)"
-		}
-		a.Readings = append(a.Readings, r)
-	}
-	for _, r := range a.Ripples {
-		if w := r.Warning(in.Cure); w != "" {
-			a.Warnings = append(a.Warnings, w)
-		}
-	}
 }

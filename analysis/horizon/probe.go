@@ -8,7 +8,6 @@ import (
 
 	"tailrace/analysis/band"
 	"tailrace/analysis/moments"
-	"tailrace/gpe/bogoliubov"
 	"tailrace/gpe/lab"
 )
 
@@ -55,10 +54,11 @@ func (a *Account) NewProbe(in Input, shots moments.Shots, commutator float64) (*
 		if err != nil {
 			return nil, err
 		}
-		t := a.PredictedTemperature()
-		theory := bogoliubov.NewBand(a.Predicted.Upstream, a.Predicted.Downstream, in.Problem.AtomsPerLength)
-		pattern := theory.Over(sides.Xu, sides.Xd, t/2, 1).Map(nil, t, 0)
-		strengths[i] = band.Shuffle(sides, band.Template(sides, pattern), 200, in.Settings.Seed)
+		e, err := a.expect(sides, in, 1)
+		if err != nil {
+			return nil, err
+		}
+		strengths[i] = band.Shuffle(sides, band.Template(sides, e.band), 200, in.Settings.Seed)
 	}
 	p.Strength = strengths[1].Strength - strengths[0].Strength
 	p.Spread = stat.StdDev(strengths[1].Shuffled, nil)

@@ -180,7 +180,7 @@ func (r *Run) cutFigure() *figure.Page {
 	if a.Dispersive != nil {
 		f.Predicted = append(f.Predicted,
 			figure.Curve{Name: "fit with dispersion", X: f.Measured.X, Y: a.Dispersive.Model()},
-			figure.Curve{Name: "theory at κ/2π", X: f.Measured.X, Y: a.Dispersive.Predicted(a.PredictedTemperature())})
+			figure.Curve{Name: "scattering, nothing free", X: f.Measured.X, Y: a.PredictedCut})
 	}
 	return f.Page()
 }

@@ -84,6 +84,7 @@ func (r *Run) Result() any {
 	o.set("flow", r.flow(a.Predicted))
 	o.set("measured_flow", r.flow(a.Measured))
 	o.with(r.Units, "omega_max", a.OmegaMax, Rate)
+	o.with(r.Units, "temperature_low_frequency", a.Scattered, Temperature)
 	o.set("band", r.band())
 	temperatures := []object{} // an empty list, not null
 	for _, t := range a.Readings {

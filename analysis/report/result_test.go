@@ -98,7 +98,7 @@ var keys = [][2]string{
 	{"measured_flow.upstream.density", "per_um"}, {"measured_flow.upstream.velocity", "mm_per_s"}, {"measured_flow.upstream.sound_speed", "mm_per_s"}, {"measured_flow.upstream.mach", ""},
 	{"measured_flow.downstream.density", "per_um"}, {"measured_flow.downstream.velocity", "mm_per_s"}, {"measured_flow.downstream.sound_speed", "mm_per_s"}, {"measured_flow.downstream.mach", ""},
 	{"measured_flow.horizon.position", "um"}, {"measured_flow.horizon.surface_gravity", "per_s"}, {"measured_flow.horizon.hawking_temperature", "nK"},
-	{"omega_max", "per_s"},
+	{"omega_max", "per_s"}, {"temperature_low_frequency", "nK"},
 	{"band.amplitude", ""}, {"band.amplitude_error", ""}, {"band.delay", "ms"}, {"band.offset", ""}, {"band.chi_square", ""}, {"band.degrees_of_freedom", ""},
 	{"band.amplitude_predicted_without_dispersion", ""}, {"band.slope", ""}, {"band.slope_error", ""}, {"band.slope_predicted", ""}, {"band.slope_predicted_with_dispersion", ""},
 	{"band.significance", ""}, {"band.p_value", ""}, {"band.strength_over_predicted", ""},

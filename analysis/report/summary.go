@@ -14,7 +14,11 @@ import (
 func (r *Run) Summary(w io.Writer) error {
 	a, u := r.Account, r.Units
 	var b strings.Builder
-	fmt.Fprintf(&b, "%s\n%d trajectories, read %s after the start\n\n", r.Title, a.Trajectories, u.say(a.Time, Time))
+	source := fmt.Sprintf("%d trajectories", a.Trajectories)
+	if a.Noiseless {
+		source = "without sampling error, in the limit of weak noise"
+	}
+	fmt.Fprintf(&b, "%s\n%s, read %s after the start\n\n", r.Title, source, u.say(a.Time, Time))
 	t := tabwriter.NewWriter(&b, 0, 0, 2, ' ', tabwriter.AlignRight)
 	row := func(cells ...string) { fmt.Fprintln(t, strings.Join(cells, "\t")+"\t") }
 	row("", "upstream", "", "", "downstream", "", "")
@@ -41,13 +45,21 @@ func (r *Run) Summary(w io.Writer) error {
 	pair("horizon, from the step", u.say(h.Position, Length), u.say(m.Position, Length))
 	pair("surface gravity κ", u.say(h.SurfaceGravity, Rate), u.say(m.SurfaceGravity, Rate))
 	pair("κ/2π, as a temperature", u.say(h.Temperature, Temperature), u.say(m.Temperature, Temperature))
+	pair("emission at low frequency", u.say(a.Scattered, Temperature), "")
 	g := a.Predicted.Geometry()
 	slope := "not found"
-	if a.Line != nil && a.Line.SlopeError > 0 {
+	switch {
+	case a.Line != nil && a.Noiseless:
+		slope = fmt.Sprintf("%.3g (ratios %.2f, %.2f)", a.Line.Slope, a.Line.Slope/g.Slope(), a.Line.Slope/a.BentSlope)
+	case a.Line != nil && a.Line.SlopeError > 0:
 		slope = fmt.Sprintf("%.3g ± %.2g (ratios %.2f, %.2f)", a.Line.Slope, a.Line.SlopeError, a.Line.Slope/g.Slope(), a.Line.Slope/a.BentSlope)
 	}
 	pair("slope of the band", fmt.Sprintf("%.3g, bent by dispersion to %.3g", g.Slope(), a.BentSlope), slope)
-	pair("strength of the band", "1", fmt.Sprintf("%.2f, %.1f standard deviations above the null", a.Null.Strength, a.Null.Significance))
+	strength := fmt.Sprintf("%.2f", a.Null.Strength)
+	if !a.Noiseless {
+		strength = fmt.Sprintf("%.2f, %.1f standard deviations above the null", a.Null.Strength, a.Null.Significance)
+	}
+	pair("strength of the band", "1", strength)
 	t.Flush()
 	b.WriteByte('\n')
 
@@ -57,14 +69,14 @@ func (r *Run) Summary(w io.Writer) error {
 		return fmt.Sprintf("[%d]", len(notes))
 	}
 	t = tabwriter.NewWriter(&b, 0, 0, 2, ' ', 0)
-	fmt.Fprintf(t, "temperature\tvalue\t68 %% interval\tof κ/2π\t\n")
+	fmt.Fprintf(t, "temperature\tvalue\t68 %% interval\tof κ/2π\tof emission\t\n")
 	for _, v := range a.Readings {
 		trust := "not trusted"
 		if v.Trusted {
 			trust = "trusted"
 		}
-		fmt.Fprintf(t, "%s\t%s\t%.3g to %s\t%.2f\t%s %s\n", v.Method, u.say(v.Value, Temperature),
-			u.Value(v.Low, Temperature), u.say(v.High, Temperature), v.Value/h.Temperature, trust, note(v.Method+": "+v.Why))
+		fmt.Fprintf(t, "%s\t%s\t%s\t%.2f\t%.2f\t%s %s\n", v.Method, u.say(v.Value, Temperature),
+			u.interval(v.Low, v.High, Temperature), v.Value/h.Temperature, v.Value/a.Scattered, trust, note(v.Method+": "+v.Why))
 	}
 	t.Flush()
 	b.WriteByte('\n')
@@ -86,6 +98,14 @@ func (r *Run) Summary(w io.Writer) error {
 	}
 	_, err := io.WriteString(w, b.String())
 	return err
+}
+
+// interval prints an interval, if there is one.
+func (u Units) interval(low, high float64, d Dimension) string {
+	if math.IsNaN(low) || math.IsNaN(high) {
+		return "none"
+	}
+	return fmt.Sprintf("%.3g to %s", u.Value(low, d), u.say(high, d))
 }
 
 // say prints a value with its unit.

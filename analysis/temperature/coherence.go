@@ -176,6 +176,17 @@ func (c *Coherence) Paired(pairing []complex128) []float64 {
 	return c.Read(c.transform.Paired(nil, pairing, 0))
 }
 
+// Reads returns the temperature that the fit makes of a given pairing.
+func (c *Coherence) Reads(pairing []complex128) (float64, error) {
+	g := c.transform.Paired(nil, pairing, 0)
+	power := make([]float64, len(g))
+	for f, z := range g {
+		power[f] = square(z)
+	}
+	T, _, err := c.solve(power, c.T, 1)
+	return T, err
+}
+
 // Frequencies returns the frequencies at which Paired wants a pairing.
 func (c *Coherence) Frequencies() []float64 { return c.transform.Frequencies() }
 

@@ -98,6 +98,16 @@ func (f *Template) Temperature() (value, low, high float64) {
 	return f.T, low, high
 }
 
+// Background returns what lies under the band (bogoliubov.Scatterer.Background)
+// in the flow that was fitted: p, from which the family was made, drawn out.
+func (f *Template) Background(p flow.Profile, s *band.Sides, atomsPerLength, cloud float64) ([]float64, error) {
+	scatterer, err := bogoliubov.NewScatterer(flow.Stretched{Profile: p, Factor: f.Factor})
+	if err != nil {
+		return nil, err
+	}
+	return scatterer.Background(s.Xu, s.Xd, atomsPerLength, cloud)
+}
+
 // Saturated reports that the fit lies where sharper horizons are no hotter: the
 // temperature is then that of the sharpest horizon that these ends allow.
 func (f *Template) Saturated() bool {

@@ -26,7 +26,7 @@ type Family struct {
 // temperature T. Errors are those of NewScatterer and Scatterer.At.
 func NewFamily(p flow.Profile, omega, factors []float64, T float64) (*Family, error) {
 	n := len(factors)
-	if n < 5 || len(omega) == 0 {
+	if n < 5 || len(omega) < 2 {
 		panic(fmt.Sprintf("bogoliubov: a family of %d factors at %d frequencies", n, len(omega)))
 	}
 	f := &Family{Omega: omega, size: make([]interp.AkimaSpline, len(omega)), phase: make([]interp.AkimaSpline, len(omega))}
@@ -35,12 +35,19 @@ func NewFamily(p flow.Profile, omega, factors []float64, T float64) (*Family, er
 	for i := range omega {
 		size[i], phase[i] = make([]float64, n), make([]float64, n)
 	}
+	some := sparse(len(omega))
+	few := make([]float64, len(some))
+	for j, i := range some {
+		few[j] = omega[int(i)]
+	}
+	logs, phases := make([]float64, len(some)), make([]float64, len(some))
+	var between interp.AkimaSpline
 	for k, factor := range factors {
 		s, err := NewScatterer(flow.Stretched{Profile: p, Factor: factor})
 		if err != nil {
 			return nil, err
 		}
-		rows, err := s.All(omega)
+		rows, err := s.All(few)
 		if err != nil {
 			return nil, err
 		}
@@ -49,21 +56,36 @@ func NewFamily(p flow.Profile, omega, factors []float64, T float64) (*Family, er
 			return nil, err
 		}
 		at[k], warmth[k] = math.Log(factor), math.Log(value)
-		for i, r := range rows {
+		for j, r := range rows {
 			z := r.Pairing(T)
-			size[i][k], phase[i][k] = math.Log(math.Max(cmplx.Abs(z), 1e-300)), cmplx.Phase(z)
-		}
-		// Phases turn slowly from one frequency to the next near ω = 0 and from
-		// one factor to the next.
-		for i := range omega {
-			before := phase[i][k]
-			switch {
-			case k > 0:
-				before = phase[i][k-1]
-			case i > 0:
-				before = phase[i-1][k]
+			// The pairing goes as 1/ω at low frequency.
+			logs[j], phases[j] = math.Log(math.Max(cmplx.Abs(z)*r.Omega, 1e-300)), cmplx.Phase(z)
+			if j > 0 {
+				phases[j] -= 2 * math.Pi * math.Round((phases[j]-phases[j-1])/(2*math.Pi))
 			}
-			phase[i][k] -= 2 * math.Pi * math.Round((phase[i][k]-before)/(2*math.Pi))
+		}
+		// From the lowest frequency on phases turn slowly: there all factors
+		// are on the same branch.
+		lowest := 0
+		if few[len(few)-1] < few[0] {
+			lowest = len(few) - 1
+		}
+		if k > 0 {
+			turn := 2 * math.Pi * math.Round((phases[lowest]-phase[int(some[lowest])][k-1])/(2*math.Pi))
+			for j := range phases {
+				phases[j] -= turn
+			}
+		}
+		for _, c := range []struct {
+			from []float64
+			to   [][]float64
+		}{{logs, size}, {phases, phase}} {
+			if err := between.Fit(some, c.from); err != nil {
+				return nil, err
+			}
+			for i := range omega {
+				c.to[i][k] = between.Predict(float64(i))
+			}
 		}
 	}
 	f.Low, f.High = at[0], at[n-1]
@@ -81,6 +103,18 @@ func NewFamily(p flow.Profile, omega, factors []float64, T float64) (*Family, er
 	return f, nil
 }
 
+// sparse returns some of the indices of n frequencies, evenly spread, first and
+// last among them: the pairing is smooth in the index of a band's rule.
+func sparse(n int) []float64 {
+	const most = 80
+	count := min(n, most)
+	at := make([]float64, count)
+	for j := range at {
+		at[j] = math.Round(float64(j) * float64(n-1) / float64(count-1))
+	}
+	return at
+}
+
 // Temperature returns the low-frequency temperature of the flow drawn out by
 // e^logFactor, which must lie in the family's range.
 func (f *Family) Temperature(logFactor float64) float64 {
@@ -94,7 +128,7 @@ func (f *Family) Pairing(dst []complex128, logFactor float64) []complex128 {
 		dst = make([]complex128, len(f.Omega))
 	}
 	for i := range dst {
-		dst[i] = cmplx.Rect(math.Exp(f.size[i].Predict(logFactor)), f.phase[i].Predict(logFactor))
+		dst[i] = cmplx.Rect(math.Exp(f.size[i].Predict(logFactor))/f.Omega[i], f.phase[i].Predict(logFactor))
 	}
 	return dst
 }

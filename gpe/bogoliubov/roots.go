@@ -37,7 +37,8 @@ func newWave(omega float64, k complex128, s flow.State) wave {
 	// U+V and U−V have product |U|²−|V|² and ratio E/ε, E = k²/2.
 	e := math.Sqrt(math.Abs(q) / (2 * phaseSpeed(q, c)))
 	group := v + math.Copysign(groupSpeed(math.Abs(q), c), q)*float64(w.norm)
-	flux := 1 / math.Sqrt(s.Density*math.Abs(group))
+	// At ω_max, to rounding, the group speed is none.
+	flux := 1 / math.Sqrt(s.Density*math.Max(math.Abs(group), 1e-10))
 	w.sum, w.diff = complex(e*flux, 0), complex(float64(w.norm)/e*flux, 0)
 	return w
 }
@@ -100,8 +101,9 @@ func downstreamWaves(omega float64, s flow.State) (in1, in2, out1, out2 wave) {
 		k2, _ := OutgoingDown(omega, v, c)
 		return in1, newWave(omega, complex(product/k2, 0), s), out1, newWave(omega, complex(k2, 0), s)
 	}
-	root := cmplx.Sqrt(complex(half*half-product, 0))
-	return in1, wave{}, out1, newWave(omega, complex(half, math.Abs(imag(root))), s)
+	// Rounding may still see two real waves there.
+	decay := math.Max(math.Sqrt(math.Max(product-half*half, 0)), 1e-9)
+	return in1, wave{}, out1, newWave(omega, complex(half, decay), s)
 }
 
 // solution is the state (D, D′, P, P′) of the equations at a place, with

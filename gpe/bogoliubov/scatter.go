@@ -177,7 +177,7 @@ func (s *Scatterer) At(omega float64) (*Scattering, error) {
 	left.y[0] = dying.at(0) // its own amplitude does not matter
 	left.y[1], left.y[2] = inU.at(s.left-s.origin), outU.at(s.left-s.origin)
 	if !m.carry(&left, s.left, s.meet, (&tamer{}).tame) {
-		return nil, ErrNotIntegrated
+		return nil, s.failure(omega, "coming from upstream")
 	}
 	// From downstream: four plane waves, or above ω_max two and a dying one.
 	right := block{count: 4}
@@ -187,13 +187,13 @@ func (s *Scatterer) At(omega float64) (*Scattering, error) {
 	if below {
 		right.y = [4]solution{out2.at(x), out1.at(x), in1.at(x), in2.at(x)}
 		if !m.carry(&right, s.right, s.meet, nil) {
-			return nil, ErrNotIntegrated
+			return nil, s.failure(omega, "coming from downstream")
 		}
 	} else {
 		right.count = 3
 		right.y = [4]solution{out2.at(x), out1.at(x), in1.at(x)}
 		if !m.carry(&right, s.right, s.meet, dying2.tame) {
-			return nil, ErrNotIntegrated
+			return nil, s.failure(omega, "coming from downstream")
 		}
 	}
 
@@ -206,7 +206,7 @@ func (s *Scatterer) At(omega float64) (*Scattering, error) {
 		b[row] = [3]complex128{-left.y[1][row], right.y[2][row], right.y[3][row]}
 	}
 	if !eliminate(&a, &b) {
-		return nil, ErrNotIntegrated
+		return nil, s.failure(omega, "solving for the amplitudes")
 	}
 	r := &Scattering{Omega: omega, Comoving: [3]float64{inU.comoving, in1.comoving, in2.comoving}}
 	for in := range 3 {
@@ -226,6 +226,10 @@ func (s *Scatterer) At(omega float64) (*Scattering, error) {
 	}
 	r.UnitarityError = r.unitarity(below)
 	return r, nil
+}
+
+func (s *Scatterer) failure(omega float64, where string) error {
+	return fmt.Errorf("%w, at ω = %.6g (ω_max is %.6g), %s", ErrNotIntegrated, omega, s.omegaMax, where)
 }
 
 // unitarity returns the largest element of S†ηS − η.

@@ -212,3 +212,22 @@ func BenchmarkSpectrum(b *testing.B) {
 		})
 	}
 }
+
+// At the very top of the branch the two waves of negative norm are one.
+func TestAtTop(t *testing.T) {
+	for _, mach := range []float64{0.4, 0.55, 0.7, 0.9} {
+		p, err := flow.HalfSoliton(mach)
+		if err != nil {
+			t.Fatal(err)
+		}
+		s, err := NewScatterer(p)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for _, omega := range []float64{math.Nextafter(s.omegaMax, 0), s.omegaMax, math.Nextafter(s.omegaMax, 9)} {
+			if r, err := s.At(omega); err != nil || !(r.Emission() < 1e-6) {
+				t.Errorf("m_u = %g, ω_max%+.1g: %v, %v", mach, omega-s.omegaMax, r, err)
+			}
+		}
+	}
+}
