@@ -23,7 +23,13 @@ type Map struct {
 	G2          *mat.Dense // g₂ − 1, [N×N]; NaN where there is no cloud
 	Error       *mat.Dense // its standard error, [N×N]
 	Shots       int
+	Commutator  float64 // that was subtracted, in n₀
 }
+
+// Variance returns the relative variance of the density at point i in symmetric
+// order, as single trajectories have it: the map's diagonal with the atoms' own
+// granularity on the grid.
+func (m *Map) Variance(i int) float64 { return m.G2.At(i, i) + m.Commutator/m.MeanDensity[i] }
 
 // Ordering is what turns symmetrically ordered moments on a grid into normally
 // ordered ones. With the commutator [ψ_i, ψ_j†] = D_ij (in n₀),
@@ -59,7 +65,7 @@ func New(sums *moments.Sums, shots moments.Shots, x []float64, o Ordering) (*Map
 	if sums.Count < 2 {
 		return nil, fmt.Errorf("a correlation map needs at least 2 trajectories, there are %d", sums.Count)
 	}
-	m := &Map{X: x, Shots: sums.Count, MeanDensity: sums.Mean(), G2: mat.NewDense(n, n, nil), Error: mat.NewDense(n, n, nil)}
+	m := &Map{X: x, Commutator: o.Commutator, Shots: sums.Count, MeanDensity: sums.Mean(), G2: mat.NewDense(n, n, nil), Error: mat.NewDense(n, n, nil)}
 	fourth := fourthMoments(shots, m.MeanDensity)
 	peak := 0.0
 	for j := range m.MeanDensity {

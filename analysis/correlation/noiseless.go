@@ -18,7 +18,7 @@ func NewNoiseless(m *gpe.Moments, x []float64, o Ordering) *Map {
 	}
 	cov := make([]float64, n*n)
 	lanes.NewUpdater(n).Add(cov, n, m.Directions)
-	r := &Map{X: x, MeanDensity: append([]float64(nil), m.Density...), G2: mat.NewDense(n, n, nil), Error: mat.NewDense(n, n, nil)}
+	r := &Map{X: x, Commutator: o.Commutator, MeanDensity: append([]float64(nil), m.Density...), G2: mat.NewDense(n, n, nil), Error: mat.NewDense(n, n, nil)}
 	peak := 0.0
 	for _, v := range m.Density {
 		peak = math.Max(peak, v)

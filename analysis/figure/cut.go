@@ -14,6 +14,7 @@ type Cut struct {
 	Predicted []Curve   // up to three
 	Across    string    // what the abscissa is, such as "distance across the band"
 	Unit      string    // its unit
+	Ordinate  string    // what is shown; empty is g₂ − 1
 }
 
 // Page lays the figure out with the keys above the panel, off the data.
@@ -41,6 +42,9 @@ func (f Cut) Page() *Page {
 	}
 	e, unit := exponent(largest(ordinates...))
 	label := "*g*_{2} − 1"
+	if f.Ordinate != "" {
+		label = f.Ordinate
+	}
 	if unit != "" {
 		label += "  (" + unit + ")"
 	}

@@ -20,6 +20,7 @@ type Map struct {
 	WindowX, WindowXPrime Range
 	Horizon               float64
 	LengthUnit            string
+	Quantity              string // what is shown; empty is g₂ − 1
 }
 
 // OffDiagonalLimit is the quantile (0 to 1) of |value| over the n×n map without
@@ -52,6 +53,9 @@ func (m Map) Page() *Page {
 	}
 	e, unit := exponent(limit)
 	label := "*g*_{2} − 1"
+	if m.Quantity != "" {
+		label = m.Quantity
+	}
 	if unit != "" {
 		label += "  (" + unit + ")"
 	}

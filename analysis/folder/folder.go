@@ -6,6 +6,7 @@
 //	map.npz       x, mean_density, g2_minus_1, g2_error
 //	shots.npz     the density of every trajectory at the analysed time
 //	result.json   what the run says
+//	exact-map.npz the map without sampling error, if it was asked for beside
 //	figures/      PNG and SVG
 //	partial.npz   what a run that has not ended has got so far
 //
@@ -105,6 +106,7 @@ type Manifest struct {
 	Source       string    `json:"config_source"`
 	Config       string    `json:"config"`
 	Seed         uint64    `json:"seed"`
+	Exact        bool      `json:"exact,omitempty"` // the map without sampling error
 	Trajectories int       `json:"trajectories"`
 	Finished     int       `json:"finished"`
 	Points       int       `json:"grid_points"`

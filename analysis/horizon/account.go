@@ -91,6 +91,9 @@ type Account struct {
 	// PredictedCut is the predicted band in the cut's bins, and
 	// PredictedCoherence |⟨b_u b_d2⟩| as the window shows it.
 	PredictedCut, PredictedCoherence []float64
+	// TemplateCut is the fitted template in the cut's bins, with what lies
+	// under it.
+	TemplateCut []float64
 
 	Ripples  []Ripple
 	Warnings []string
@@ -98,6 +101,14 @@ type Account struct {
 	meanCurrent []float64 // of the mean field, in the grid's frame
 	profile     flow.Profile
 	scatterer   *bogoliubov.Scatterer
+}
+
+// Source says what the account was drawn from.
+func (a *Account) Source() string {
+	if a.Noiseless {
+		return "without sampling error"
+	}
+	return fmt.Sprintf("%d trajectories", a.Trajectories)
 }
 
 // PredictedTemperature returns κ/2π of the predicted flow.

@@ -158,6 +158,11 @@ func (a *Account) fitTemplate(sides *band.Sides, e *expected, under []float64, i
 	}
 	if err != nil {
 		a.warn("%v", err)
+		return nil
+	}
+	a.TemplateCut = a.Template.Model()
+	for b, v := range under {
+		a.TemplateCut[b] += v
 	}
 	return nil
 }

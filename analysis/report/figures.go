@@ -26,7 +26,8 @@ func (r *Run) Figures(folder string) ([]string, error) {
 		page *figure.Page
 	}{
 		{"flow", r.flowFigure()}, {"map", r.mapFigure()}, {"cut", r.cutFigure()},
-		{"space-time", r.spaceTimeFigure()}, {"null", r.nullFigure()},
+		{"coherence", r.coherenceFigure()}, {"space-time", r.spaceTimeFigure()}, {"null", r.nullFigure()},
+		{"difference", r.differenceFigure()},
 	}
 	var names []string
 	for _, p := range pages {
@@ -78,10 +79,25 @@ func (r *Run) flowFigure() *figure.Page {
 }
 
 func (r *Run) mapFigure() *figure.Page {
+	return r.mapOf(func(i, j int) float64 { return r.Account.Map.G2.At(i, j) }, "")
+}
+
+// differenceFigure shows by how many standard errors the ensemble's map differs
+// from the exact one.
+func (r *Run) differenceFigure() *figure.Page {
+	if r.Beside == nil {
+		return nil
+	}
+	n := len(r.Account.Map.X)
+	return r.mapOf(func(i, j int) float64 { return r.Beside.Difference[i*n+j] }, "(ensemble − exact)/standard error")
+}
+
+// mapOf shows a function of pairs of grid points.
+func (r *Run) mapOf(at func(i, j int) float64, quantity string) *figure.Page {
 	a, u := r.Account, r.Units
 	lo, hi := r.view()
 	var columns []int
-	f := figure.Map{LengthUnit: u.Axis(Length), WindowX: r.span(a.Window.UpFar, a.Window.UpNear), WindowXPrime: r.span(a.Window.DownNear, a.Window.DownFar)}
+	f := figure.Map{Quantity: quantity, LengthUnit: u.Axis(Length), WindowX: r.span(a.Window.UpFar, a.Window.UpNear), WindowXPrime: r.span(a.Window.DownNear, a.Window.DownFar)}
 	for j, x := range a.Map.X {
 		if x >= lo && x <= hi {
 			columns = append(columns, j)
@@ -96,7 +112,7 @@ func (r *Run) mapFigure() *figure.Page {
 			sum := 0.0
 			for _, p := range columns[i*cell : (i+1)*cell] {
 				for _, q := range columns[j*cell : (j+1)*cell] {
-					sum += a.Map.G2.At(p, q)
+					sum += at(p, q)
 				}
 			}
 			values[i*n+j] = sum / float64(cell*cell)
@@ -160,11 +176,16 @@ func (r *Run) cutFigure() *figure.Page {
 	// The delay s is shown as a distance at the upstream partner's speed.
 	up := a.Predicted.Geometry().Up
 	place := func(s float64) float64 { return u.Value(s*up, Length) }
-	f := figure.Cut{Across: "distance across the band, upstream", Unit: u.Axis(Length), Measured: figure.Points{Name: fmt.Sprintf("%d trajectories", a.Trajectories)}}
+	f := figure.Cut{Across: "distance across the band, upstream", Unit: u.Axis(Length), Measured: figure.Points{Name: a.Source()}}
 	for b, s := range a.Cut.S {
 		f.Measured.X = append(f.Measured.X, place(s))
 		f.Measured.Y = append(f.Measured.Y, a.Cut.Mean[b])
-		f.Measured.Error = append(f.Measured.Error, a.Cut.Error[b])
+		if !a.Noiseless {
+			f.Measured.Error = append(f.Measured.Error, a.Cut.Error[b])
+		}
+	}
+	if a.Template != nil {
+		f.Predicted = append(f.Predicted, figure.Curve{Name: "template", X: f.Measured.X, Y: a.TemplateCut})
 	}
 	if a.Width != nil {
 		f.Fit.Name = "fit of sech²"
@@ -172,15 +193,35 @@ func (r *Run) cutFigure() *figure.Page {
 		const fine = 200
 		for i := range fine + 1 {
 			s := first + (last-first)*float64(i)/fine
-			lo, hi := a.Width.Limits(s)
 			f.Fit.X, f.Fit.Y = append(f.Fit.X, place(s)), append(f.Fit.Y, a.Width.Model(s))
-			f.Low, f.High = append(f.Low, lo), append(f.High, hi)
+			if !a.Noiseless {
+				lo, hi := a.Width.Limits(s)
+				f.Low, f.High = append(f.Low, lo), append(f.High, hi)
+			}
 		}
 	}
 	if a.Dispersive != nil {
 		f.Predicted = append(f.Predicted,
 			figure.Curve{Name: "fit with dispersion", X: f.Measured.X, Y: a.Dispersive.Model()},
 			figure.Curve{Name: "scattering, nothing free", X: f.Measured.X, Y: a.PredictedCut})
+	}
+	return f.Page()
+}
+
+// coherenceFigure shows |⟨b_u b_d2⟩| against frequency.
+func (r *Run) coherenceFigure() *figure.Page {
+	a, u := r.Account, r.Units
+	c := a.Coherence
+	if c == nil {
+		return nil
+	}
+	omega := u.Values(c.Omega, Rate)
+	f := figure.Cut{Ordinate: "|⟨*b*_{u} *b*_{d2}⟩|", Across: "frequency ω", Unit: u.Axis(Rate),
+		Measured:  figure.Points{Name: a.Source(), X: omega, Y: c.Value},
+		Fit:       figure.Curve{Name: "thermal, fitted", X: omega, Y: c.Model(c.T)},
+		Predicted: []figure.Curve{{Name: "scattering, nothing free", X: omega, Y: a.PredictedCoherence}}}
+	if !a.Noiseless {
+		f.Measured.Error = c.Error
 	}
 	return f.Page()
 }
@@ -216,6 +257,9 @@ func (r *Run) spaceTimeFigure() *figure.Page {
 
 func (r *Run) nullFigure() *figure.Page {
 	n := r.Account.Null
+	if len(n.Shuffled) == 0 {
+		return nil
+	}
 	return figure.Null{Shuffled: n.Shuffled, Measured: n.Strength,
 		Strength: "strength of the band over its prediction",
 		Note:     fmt.Sprintf("%.1f standard deviations", n.Significance)}.Page()

@@ -23,6 +23,7 @@ type Run struct {
 	Warnings               []string
 	Engine                 Engine
 	SpaceTime              SpaceTime
+	Beside                 *horizon.Beside // the exact map, if it was asked for
 }
 
 // Engine is how fast the ensemble ran.
@@ -35,6 +36,7 @@ type Engine struct {
 	Trajectories    int // that ran in this session
 	NoiseModes      string
 	ModesFromCache  bool
+	Directions      int // of the noise, for an exact map
 	PointsPerSecond float64
 }
 
@@ -45,6 +47,12 @@ func (e Engine) PerPoint(points int) float64 {
 		return math.NaN()
 	}
 	return float64(e.StepTime.Nanoseconds()) / float64(e.Trajectories) / float64(e.Steps) / float64(points)
+}
+
+// PerDirection returns the nanoseconds of wall time per grid point, time step
+// and direction of an exact map.
+func (e Engine) PerDirection(points int) float64 {
+	return float64(e.Wall.Nanoseconds()) / float64(e.Directions) / float64(e.Steps) / float64(points)
 }
 
 // PerSecond returns trajectories per second of wall time.
@@ -86,8 +94,34 @@ func (r *Run) Result() any {
 	o.with(r.Units, "omega_max", a.OmegaMax, Rate)
 	o.with(r.Units, "temperature_low_frequency", a.Scattered, Temperature)
 	o.set("band", r.band())
+	if b := r.Beside; b != nil {
+		var e object
+		e.set("chi_square_per_pixel", number(b.ChiSquare))
+		e.set("chi_square_spread", number(b.Spread))
+		e.set("pixels", b.Pixels)
+		e.set("strength_over_predicted", number(b.Strength))
+		e.set("temperatures", r.temperatures(b.Exact.Readings))
+		o.set("exact", e)
+	}
+	o.set("temperatures", r.temperatures(a.Readings))
+	var kept object
+	if !a.Noiseless {
+		kept.set("atoms_relative", number(r.Conserved.NormDrift))
+		kept.with(r.Units, "energy_per_atom_over_kB", r.Conserved.EnergyDrift, Temperature)
+	}
+	o.set("conservation", kept)
+	checks := []object{}
+	for _, c := range r.Checks {
+		checks = append(checks, object{{"name", c.Name}, {"value", number(c.Value)}, {"limit", number(c.Limit)}, {"ok", c.OK}, {"why", c.Why}})
+	}
+	o.set("checks", checks)
+	o.set("warnings", append([]string{}, r.Warnings...))
+	return o
+}
+
+func (r *Run) temperatures(readings []temperature.Reading) []object {
 	temperatures := []object{} // an empty list, not null
-	for _, t := range a.Readings {
+	for _, t := range readings {
 		var v object
 		v.set("method", t.Method)
 		v.with(r.Units, "value", t.Value, Temperature)
@@ -97,18 +131,7 @@ func (r *Run) Result() any {
 		v.set("why", t.Why)
 		temperatures = append(temperatures, v)
 	}
-	o.set("temperatures", temperatures)
-	var kept object
-	kept.set("atoms_relative", number(r.Conserved.NormDrift))
-	kept.with(r.Units, "energy_per_atom_over_kB", r.Conserved.EnergyDrift, Temperature)
-	o.set("conservation", kept)
-	checks := []object{}
-	for _, c := range r.Checks {
-		checks = append(checks, object{{"name", c.Name}, {"value", number(c.Value)}, {"limit", number(c.Limit)}, {"ok", c.OK}, {"why", c.Why}})
-	}
-	o.set("checks", checks)
-	o.set("warnings", append([]string{}, r.Warnings...))
-	return o
+	return temperatures
 }
 
 func (r *Run) band() object {

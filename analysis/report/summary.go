@@ -14,9 +14,9 @@ import (
 func (r *Run) Summary(w io.Writer) error {
 	a, u := r.Account, r.Units
 	var b strings.Builder
-	source := fmt.Sprintf("%d trajectories", a.Trajectories)
+	source := a.Source()
 	if a.Noiseless {
-		source = "without sampling error, in the limit of weak noise"
+		source += ", in the limit of weak noise"
 	}
 	fmt.Fprintf(&b, "%s\n%s, read %s after the start\n\n", r.Title, source, u.say(a.Time, Time))
 	t := tabwriter.NewWriter(&b, 0, 0, 2, ' ', tabwriter.AlignRight)
@@ -81,9 +81,27 @@ func (r *Run) Summary(w io.Writer) error {
 	t.Flush()
 	b.WriteByte('\n')
 
-	fmt.Fprintf(&b, "kept in every trajectory: atoms to %.1g, energy to %.1g of m c₀² an atom\n", math.Abs(r.Conserved.NormDrift), math.Abs(r.Conserved.EnergyDrift))
-	fmt.Fprintf(&b, "engine: %.3g ns a point and step, %.3g trajectories a second on %d workers, kernel %s\n",
-		r.Engine.PerPoint(r.Problem.Grid.N), r.Engine.PerSecond(), r.Engine.Workers, r.Engine.Kernel)
+	if b2 := r.Beside; b2 != nil {
+		fmt.Fprintf(&b, "beside the exact map: χ² of the difference %.3f a pixel over %d pixels (1 ± %.3f by chance), strength of the exact band %.2f\n", b2.ChiSquare, b2.Pixels, b2.Spread, b2.Strength)
+		for _, v := range b2.Exact.Readings {
+			fmt.Fprintf(&b, "  %s of the exact map: %s, %.2f of the emission\n", v.Method, u.say(v.Value, Temperature), v.Value/a.Scattered)
+		}
+		if w := b2.Warning(); w != "" {
+			notes = append(notes, w)
+		}
+		b.WriteByte('\n')
+	}
+	switch {
+	case a.Noiseless:
+		fmt.Fprintf(&b, "engine: %.3g ns a point, step and direction, %d directions in %.3g s on %d workers, kernel %s\n",
+			r.Engine.PerDirection(r.Problem.Grid.N), r.Engine.Directions, r.Engine.Wall.Seconds(), r.Engine.Workers, r.Engine.Kernel)
+	default:
+		fmt.Fprintf(&b, "kept in every trajectory: atoms to %.1g, energy to %.1g of m c₀² an atom\n", math.Abs(r.Conserved.NormDrift), math.Abs(r.Conserved.EnergyDrift))
+		if r.Engine.Trajectories > 0 {
+			fmt.Fprintf(&b, "engine: %.3g ns a point and step, %.3g trajectories a second on %d workers, kernel %s\n",
+				r.Engine.PerPoint(r.Problem.Grid.N), r.Engine.PerSecond(), r.Engine.Workers, r.Engine.Kernel)
+		}
+	}
 	fmt.Fprintf(&b, "noise: %s\n", r.Engine.NoiseModes)
 	for _, c := range r.Checks {
 		if !c.OK {

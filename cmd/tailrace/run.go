@@ -17,6 +17,7 @@ import (
 	"tailrace/configs"
 	"tailrace/gpe"
 	"tailrace/gpe/flow"
+	"tailrace/gpe/lab"
 	"tailrace/gpe/lanes"
 )
 
@@ -26,6 +27,7 @@ type runOptions struct {
 	resume  bool
 	asJSON  bool
 	noCache bool
+	exact   string
 }
 
 func runCommand() *cobra.Command {
@@ -38,7 +40,12 @@ of an example or the path of a file, and draws up what it says of the horizon:
 the flow, the correlation map, the band across it and its temperature.
 
 Everything is written into a folder of its own. Ctrl-C stops a run after the
-trajectories in hand; --resume goes on with it, to the same numbers bit by bit.`,
+trajectories in hand; --resume goes on with it, to the same numbers bit by bit.
+
+With --exact it makes, instead of an ensemble, the map that infinitely many
+trajectories would give in the limit of weak noise, by carrying every direction
+of the initial noise under the linearised equation: no sampling error, and often
+sooner. --exact=beside does so after the ensemble and compares the two.`,
 		Args: oneConfig,
 		RunE: func(cmd *cobra.Command, args []string) error { return o.run(cmd.Context(), args[0]) },
 	}
@@ -47,12 +54,17 @@ trajectories in hand; --resume goes on with it, to the same numbers bit by bit.`
 	c.Flags().BoolVar(&o.resume, "resume", false, "go on with the run that was stopped in the folder")
 	c.Flags().BoolVar(&o.asJSON, "json", false, "print result.json on stdout and nothing else there")
 	c.Flags().BoolVar(&o.noCache, "no-cache", false, "find the modes of the initial state anew")
+	c.Flags().StringVar(&o.exact, "exact", exactNo, "the map without sampling error: only, or beside the ensemble's")
+	c.Flags().Lookup("exact").NoOptDefVal = exactOnly
 	return c
 }
 
 func (o *runOptions) run(ctx context.Context, name string) error {
 	if o.workers < 1 {
 		return &usageError{fmt.Errorf("--workers = %d: at least one is needed", o.workers)}
+	}
+	if o.exact != exactNo && o.exact != exactOnly && o.exact != exactBeside {
+		return &usageError{fmt.Errorf("--exact = %q: %s or %s is expected", o.exact, exactOnly, exactBeside)}
 	}
 	config, err := configs.Load(name)
 	if err != nil {
@@ -61,6 +73,9 @@ func (o *runOptions) run(ctx context.Context, name string) error {
 	r := running{options: o, config: config}
 	if err := r.prepare(); err != nil {
 		return err
+	}
+	if o.exact == exactOnly {
+		return r.exact(ctx)
 	}
 	if err := r.open(); err != nil {
 		return err
@@ -97,7 +112,7 @@ func (r *running) prepare() (err error) {
 	if err != nil && !errors.Is(err, configs.ErrNoPrediction) {
 		return err
 	}
-	if r.config.Ensemble.Trajectories < 2 {
+	if r.options.exact != exactOnly && r.config.Ensemble.Trajectories < 2 {
 		return r.config.Fault("ensemble.trajectories", "", "at least 2 for a correlation", "and a few thousand to see the band")
 	}
 	if _, err := horizon.Foresee(horizonInput(r.scenario, r.predicted, nil, nil)); err != nil {
@@ -108,6 +123,9 @@ func (r *running) prepare() (err error) {
 	}
 	if r.cached, err = r.scenario.AddNoise(r.cache); err != nil {
 		return err
+	}
+	if r.options.exact == exactOnly {
+		return nil
 	}
 	if r.ensemble, err = gpe.NewEnsemble(r.scenario.Problem); err != nil {
 		return err
@@ -134,7 +152,7 @@ func (r *running) open() (err error) {
 		if r.folder, err = folder.Resume(path); err != nil {
 			return err
 		}
-		return takeUp(r.folder, r.config, r.store)
+		return r.takeUp()
 	}
 	if r.folder, err = folder.Create(path); err != nil {
 		return err
@@ -147,7 +165,7 @@ func (r *running) carry(ctx context.Context) error {
 	p, store := r.scenario.Problem, r.store
 	fmt.Fprintf(os.Stderr, "%s: %d points over %.4g ξ, %d trajectories\n", r.config.Name(), p.Grid.N, p.Grid.Length(), store.Count)
 	begun, earlier := store.Finished(), store.StepTime()
-	r.bar = newProgress(store.Count, begun)
+	r.bar = newProgress("trajectories", store.Count, begun)
 	start := time.Now()
 	err := r.ensemble.Run(ctx, store.Pending(), store.Count, r.options.workers, store)
 	r.bar.end()
@@ -177,7 +195,7 @@ func (r *running) stop() error {
 
 // conclude draws up the account and writes everything.
 func (r *running) conclude(ctx context.Context) error {
-	f, p := r.folder, r.scenario.Problem
+	p := r.scenario.Problem
 	sums, err := r.writeMoments()
 	if err != nil {
 		return err
@@ -185,8 +203,8 @@ func (r *running) conclude(ctx context.Context) error {
 	input := horizonInput(r.scenario, r.predicted, r.store, sums)
 	account, err := horizon.Draw(input)
 	if err != nil {
-		err = fmt.Errorf("the ensemble is in %s, but its horizon could not be read: %w", f.Path, err)
-		return errors.Join(err, r.store.Save(f.File("partial.npz"))) // so that --resume can try again
+		err = fmt.Errorf("the ensemble is in %s, but its horizon could not be read: %w", r.folder.Path, err)
+		return errors.Join(err, r.store.Save(r.folder.File("partial.npz"))) // so that --resume can try again
 	}
 	checks := append(r.scenario.Checks, horizon.Checks(p, account)...)
 	probe, err := probeCutoff(ctx, r.scenario, r.cache, account, input, r.options.workers)
@@ -198,15 +216,39 @@ func (r *running) conclude(ctx context.Context) error {
 	case probe != nil:
 		checks = append(checks, probe.Check())
 	}
+	var beside *horizon.Beside
+	if r.options.exact == exactBeside {
+		if beside, err = r.beside(ctx, account); errors.Is(err, context.Canceled) {
+			return r.stop()
+		} else if err != nil {
+			return err
+		}
+	}
+	return r.deliver(account, checks, beside, &input.Shots)
+}
+
+// deliver writes what an account says; shots are nil for an exact map.
+func (r *running) deliver(account *horizon.Account, checks []lab.Check, beside *horizon.Beside, shots *moments.Shots) (err error) {
+	f, p := r.folder, r.scenario.Problem
 	out := &report.Run{Title: r.config.Title, Config: r.config.Source, Version: version,
 		Units:   report.Units{Lab: r.scenario.InLab, Scale: r.scenario.Scale, PerXi: p.AtomsPerLength},
-		Account: account, Problem: p, Conserved: r.store.Conserved(), Engine: r.engine,
-		Checks: checks, Warnings: account.Warnings}
+		Account: account, Problem: p, Engine: r.engine, Checks: checks, Warnings: account.Warnings, Beside: beside}
 	if out.SpaceTime, err = spaceTime(r.scenario); err != nil {
 		return err
 	}
-	if err := out.WriteArrays(f.Path, input.Shots); err != nil {
+	if err := out.Units.WriteMap(f.Path, "map.npz", account.Map); err != nil {
 		return err
+	}
+	if shots != nil {
+		out.Conserved = r.store.Conserved()
+		if err := out.WriteShots(f.Path, *shots); err != nil {
+			return err
+		}
+	}
+	if beside != nil {
+		if err := out.Units.WriteMap(f.Path, "exact-map.npz", beside.Exact.Map); err != nil {
+			return err
+		}
 	}
 	if _, err := out.Figures(f.File("figures")); err != nil {
 		return err
@@ -235,17 +277,29 @@ func (r *running) conclude(ctx context.Context) error {
 	return nil
 }
 
-// takeUp fills store with what a stopped run left, if it is of the same config.
-func takeUp(f *folder.Folder, config *configs.Config, store *moments.Store) error {
-	before, err := f.ReadManifest()
-	if err != nil {
+// sameConfig returns the manifest of the stopped run in the folder, if that was
+// of the same config.
+func (r *running) sameConfig() (*folder.Manifest, error) {
+	before, err := r.folder.ReadManifest()
+	switch {
+	case err != nil:
+		return nil, err
+	case before.Config != string(r.config.Text):
+		return nil, &folder.UseError{Path: r.folder.Path, Why: "the run in it is of another config", Hint: "give the config it began with, which its run.json holds, or choose another --folder"}
+	case before.Exact != r.manifest.Exact:
+		kind := map[bool]string{true: "an exact map, begun with --exact", false: "an ensemble, begun without --exact"}[before.Exact]
+		return nil, &folder.UseError{Path: r.folder.Path, Why: "the run in it is of " + kind, Hint: "go on as it began, or choose another --folder"}
+	}
+	return before, nil
+}
+
+// takeUp fills the store with what a stopped run left.
+func (r *running) takeUp() error {
+	if _, err := r.sameConfig(); err != nil {
 		return err
 	}
-	if before.Config != string(config.Text) {
-		return &folder.UseError{Path: f.Path, Why: "the run in it is of another config", Hint: "give the config it began with, which its run.json holds, or choose another --folder"}
-	}
-	if err := store.Load(f.File("partial.npz")); err != nil {
-		return &folder.UseError{Path: f.Path, Why: "what the stopped run left cannot be read: " + err.Error(), Hint: "start it anew in another --folder"}
+	if err := r.store.Load(r.folder.File("partial.npz")); err != nil {
+		return &folder.UseError{Path: r.folder.Path, Why: "what the stopped run left cannot be read: " + err.Error(), Hint: "start it anew in another --folder"}
 	}
 	return nil
 }

@@ -2,7 +2,6 @@ package bogoliubov
 
 import (
 	"math"
-	"math/cmplx"
 
 	"tailrace/gpe/flow"
 )
@@ -20,8 +19,14 @@ import (
 
 // medium is a flow at a frequency.
 type medium struct {
-	profile flow.Profile
-	omega   float64
+	profile   flow.Profile
+	localiser flow.Localiser // the profile, if it is one
+	omega     float64
+}
+
+func newMedium(p flow.Profile, omega float64) *medium {
+	l, _ := p.(flow.Localiser)
+	return &medium{p, l, omega}
 }
 
 // block is up to four solutions carried together.
@@ -32,16 +37,29 @@ type block struct {
 
 // slope sets out to the derivatives of the solutions in b at x.
 func (m *medium) slope(out, b *block, x float64) {
-	n, v := m.profile.At(x)
-	dn, _ := m.profile.Gradient(x)
-	c := m.profile.SoundSpeed(x)
-	damp, drift, stiff, omega := complex(-dn/n, 0), complex(0, -2*v), complex(4*c*c, 0), complex(-2*m.omega, 0)
+	f := m.local(x)
+	damp, drift, stiff, omega := -f.Gradient/f.Density, 2*f.Velocity, 4*f.SoundSpeed*f.SoundSpeed, -2*m.omega
 	for i := range b.count {
 		y, d := &b.y[i], &out.y[i]
 		d[0], d[2] = y[1], y[3]
-		d[1] = stiff*y[0] + omega*y[2] + damp*y[1] + drift*y[3]
-		d[3] = omega*y[0] + damp*y[3] + drift*y[1]
+		// −2ivP′ = 2v(Im P′ − i Re P′)
+		d[1] = complex(
+			stiff*real(y[0])+omega*real(y[2])+damp*real(y[1])+drift*imag(y[3]),
+			stiff*imag(y[0])+omega*imag(y[2])+damp*imag(y[1])-drift*real(y[3]))
+		d[3] = complex(
+			omega*real(y[0])+damp*real(y[3])+drift*imag(y[1]),
+			omega*imag(y[0])+damp*imag(y[3])-drift*real(y[1]))
 	}
+}
+
+// local returns what the equations need of the flow at x.
+func (m *medium) local(x float64) flow.Local {
+	if m.localiser != nil {
+		return m.localiser.Local(x)
+	}
+	n, v := m.profile.At(x)
+	dn, _ := m.profile.Gradient(x)
+	return flow.Local{Density: n, Gradient: dn, Velocity: v, SoundSpeed: m.profile.SoundSpeed(x)}
 }
 
 // Extrapolation of the modified midpoint rule, whose error goes in even powers
@@ -75,10 +93,10 @@ func (m *medium) midpoint(to, from *block, x, H float64, n int, first *block) {
 }
 
 func advance(b, slope *block, h float64) {
-	s := complex(h, 0)
 	for i := range b.count {
-		for c := range b.y[i] {
-			b.y[i][c] += s * slope.y[i][c]
+		y, d := &b.y[i], &slope.y[i]
+		for c := range y {
+			y[c] += complex(h*real(d[c]), h*imag(d[c]))
 		}
 	}
 }
@@ -97,12 +115,12 @@ func (m *medium) step(b *block, x, H float64) (rows int) {
 		worst := math.Inf(1)
 		for k := 1; k <= row; k++ {
 			ratio := float64(n) / float64(n-2*k)
-			c := complex(1/(ratio*ratio-1), 0)
+			c := 1 / (ratio*ratio - 1)
 			kept := table[k]
 			table[k] = table[k-1]
 			worst = 0
 			for i := range b.count {
-				worst = math.Max(worst, correct(&table[k].y[i], &table[k-1].y[i], &previous.y[i], c))
+				worst = max(worst, correct(&table[k].y[i], &table[k-1].y[i], &previous.y[i], c))
 			}
 			previous = kept
 		}
@@ -117,16 +135,15 @@ func (m *medium) step(b *block, x, H float64) (rows int) {
 // correct sets to += c (to − previous), where to is a copy of latest, and
 // returns how large that was: the D's against what drives them, the P's against
 // themselves.
-func correct(to, latest, previous *solution, c complex128) float64 {
-	var delta [4]float64
+func correct(to, latest, previous *solution, c float64) float64 {
+	var delta, size [4]float64
 	for i := range to {
-		d := c * (latest[i] - previous[i])
-		to[i] += d
-		delta[i] = cmplx.Abs(d)
+		re, im := c*(real(latest[i])-real(previous[i])), c*(imag(latest[i])-imag(previous[i]))
+		to[i] += complex(re, im)
+		delta[i] = math.Abs(re) + math.Abs(im)
+		size[i] = math.Abs(real(to[i])) + math.Abs(imag(to[i]))
 	}
-	p := cmplx.Abs(to[2]) + cmplx.Abs(to[3])
-	d := cmplx.Abs(to[0]) + cmplx.Abs(to[1]) + cmplx.Abs(to[3])
-	return math.Max((delta[0]+delta[1])/d, (delta[2]+delta[3])/p)
+	return max((delta[0]+delta[1])/(size[0]+size[1]+size[3]), (delta[2]+delta[3])/(size[2]+size[3]))
 }
 
 // carry takes b from x to end. After each step tame is called, which may

@@ -168,7 +168,7 @@ func (s *Scatterer) At(omega float64) (*Scattering, error) {
 	}
 	inU, outU, dying := upstreamWaves(omega, s.up)
 	in1, in2, out1, out2 := downstreamWaves(omega, s.down)
-	m := &medium{s.profile, omega}
+	m := newMedium(s.profile, omega)
 
 	// From upstream: the dying wave goes first. It grows on the way, and of
 	// the others only what is not that wave is kept, which changes no

@@ -22,6 +22,18 @@ func (s Stretched) Gradient(x float64) (density, velocity float64) {
 // SoundSpeed implements Profile.
 func (s Stretched) SoundSpeed(x float64) float64 { return s.Profile.SoundSpeed(x / s.Factor) }
 
+// Local implements Localiser.
+func (s Stretched) Local(x float64) Local {
+	if l, ok := s.Profile.(Localiser); ok {
+		f := l.Local(x / s.Factor)
+		f.Gradient /= s.Factor
+		return f
+	}
+	n, v := s.At(x)
+	dn, _ := s.Gradient(x)
+	return Local{n, dn, v, s.SoundSpeed(x)}
+}
+
 // Ends implements Profile. The middle of the step stays where it is.
 func (s Stretched) Ends() (upstream, downstream State, horizon Horizon) {
 	upstream, downstream, horizon = s.Profile.Ends()

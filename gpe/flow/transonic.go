@@ -154,6 +154,13 @@ func (t *Transonic) SoundSpeed(x float64) float64 {
 	return t.Law.SoundSpeed(A * A)
 }
 
+// Local implements Localiser.
+func (t *Transonic) Local(x float64) Local {
+	A, slope := t.amplitude(x)
+	n := A * A
+	return Local{n, 2 * A * slope, t.Current / n, t.Law.SoundSpeed(n)}
+}
+
 // Span implements Profile.
 func (t *Transonic) Span() (left, right float64) {
 	return t.X[0], t.X[len(t.X)-1]

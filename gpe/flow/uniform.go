@@ -70,6 +70,9 @@ func (u *Uniform) Ends() (upstream, downstream State, horizon Horizon) {
 	return u.Upstream, u.Downstream, u.Horizon
 }
 
+// Local implements Localiser.
+func (u *Uniform) Local(x float64) Local { return Local{1, 0, u.Velocity, u.SoundSpeed(x)} }
+
 // Span implements Profile.
 func (u *Uniform) Span() (left, right float64) {
 	return -flatWidths * u.Width, flatWidths * u.Width

@@ -1,0 +1,86 @@
+package horizon
+
+import (
+	"fmt"
+	"math"
+
+	"tailrace/analysis/correlation"
+)
+
+// Beside is an ensemble's map held against the one without sampling error, in
+// the cross-horizon window.
+type Beside struct {
+	Pixels    int
+	ChiSquare float64 // mean of (ensemble − exact)²/error² over the pixels
+	// Spread is by how much ChiSquare would scatter about 1 if the two differed
+	// by chance alone: pixels of one window share shots and points.
+	Spread   float64
+	Strength float64 // of the exact map's band over its prediction
+	Exact    *Account
+	// Difference is (ensemble − exact)/error at every pair of points, NaN where
+	// there is no cloud, [N×N].
+	Difference []float64
+}
+
+// NewBeside compares the account of an ensemble with the exact one of the same
+// problem.
+func NewBeside(ensemble, exact *Account) *Beside {
+	b := &Beside{Exact: exact, Strength: exact.Null.Strength}
+	n := len(ensemble.Map.X)
+	b.Difference = make([]float64, n*n)
+	for i := range n {
+		for j := range n {
+			b.Difference[i*n+j] = (ensemble.Map.G2.At(i, j) - exact.Map.G2.At(i, j)) / ensemble.Map.Error.At(i, j)
+		}
+	}
+	up, down := inside(ensemble.Map, ensemble.Window.UpFar, ensemble.Window.UpNear), inside(ensemble.Map, ensemble.Window.DownNear, ensemble.Window.DownFar)
+	for _, i := range up {
+		for _, j := range down {
+			d := b.Difference[i*n+j]
+			b.ChiSquare += d * d
+			b.Pixels++
+		}
+	}
+	b.ChiSquare /= float64(b.Pixels)
+	b.Spread = math.Sqrt(2 / math.Max(1, independent(ensemble.Map, up)*independent(ensemble.Map, down)))
+	return b
+}
+
+// Warning says that the ensemble departs from weak noise, or nothing.
+func (b *Beside) Warning() string {
+	const far = 5 // standard deviations of ChiSquare; common practice, no source
+	if b.ChiSquare-1 <= far*b.Spread {
+		return ""
+	}
+	return fmt.Sprintf("the ensemble's map departs from the exact one, which is for weak noise: χ² is %.3f a pixel where %.3f is the most that chance would make of 1; with so few atoms in a healing length the noise acts back on the flow and on itself",
+		b.ChiSquare, 1+far*b.Spread)
+}
+
+func inside(m *correlation.Map, lo, hi float64) (points []int) {
+	for j, x := range m.X {
+		if x >= lo && x <= hi {
+			points = append(points, j)
+		}
+	}
+	return points
+}
+
+// independent returns how many independent values the fluctuations at some
+// points amount to: (Σλ)²/Σλ² of their correlation matrix, which has 1 on its
+// diagonal.
+func independent(m *correlation.Map, points []int) float64 {
+	var square float64
+	for _, i := range points {
+		for _, j := range points {
+			// In symmetric order: what is left of it off the diagonal is the
+			// normally ordered map.
+			r := 1.0
+			if i != j {
+				r = m.G2.At(i, j) / math.Sqrt(m.Variance(i)*m.Variance(j))
+			}
+			square += r * r
+		}
+	}
+	n := float64(len(points))
+	return n * n / square
+}
