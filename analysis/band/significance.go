@@ -17,6 +17,9 @@ type Null struct {
 	PValue       float64   // share of Shuffled at least as strong, (1+n)/(1+all)
 }
 
+// Spread returns the standard deviation of the strength by chance.
+func (n *Null) Spread() float64 { return stat.StdDev(n.Shuffled, nil) }
+
 // Template prepares a pattern over the window, row by row of Xu with Xd
 // running fastest, such as the predicted band, for measuring how much of it is
 // in a map: less its mean, so that a constant does not count, and scaled so

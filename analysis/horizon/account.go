@@ -25,7 +25,8 @@ type Input struct {
 	Predicted flow.Profile // nil: the flow over the step at the measured density
 	Step      Step         // with Predicted nil
 	Settings  Settings
-	Cure      string // what to change when the plateau is not clean
+	Window    band.Window // empty: as the band's age allows
+	Cure      string      // what to change when the plateau is not clean
 }
 
 // Step is the potential step, for a prediction at the measured density.
@@ -134,8 +135,10 @@ func Foresee(in Input) (*Account, error) {
 	}
 	a.OmegaMax = bogoliubov.MaxFrequency(a.Predicted.Downstream.Velocity, a.Predicted.Downstream.SoundSpeed)
 	a.SechHeight = bogoliubov.SechAmplitude(a.Predicted.Horizon.SurfaceGravity, a.Predicted.Upstream, a.Predicted.Downstream, p.AtomsPerLength)
-	a.Window = band.AgedWindow(a.Predicted.Geometry(), in.Frame.Age, in.Settings.Near, in.Settings.Fraction)
-	a.clip()
+	if a.Window = in.Window; a.Window == (band.Window{}) {
+		a.Window = band.AgedWindow(a.Predicted.Geometry(), in.Frame.Age, in.Settings.Near, in.Settings.Fraction)
+		a.clip()
+	}
 	return a, a.Window.Check(a.fromHorizon(), a.MeanField.Density)
 }
 

@@ -16,7 +16,10 @@ type Beside struct {
 	// by chance alone: pixels of one window share shots and points.
 	Spread   float64
 	Strength float64 // of the exact map's band over its prediction
-	Exact    *Account
+	// Lost is by how many standard deviations of chance the ensemble's band is
+	// weaker than the exact one.
+	Lost  float64
+	Exact *Account
 	// Difference is (ensemble − exact)/error at every pair of points, NaN where
 	// there is no cloud, [N×N].
 	Difference []float64
@@ -26,6 +29,7 @@ type Beside struct {
 // problem.
 func NewBeside(ensemble, exact *Account) *Beside {
 	b := &Beside{Exact: exact, Strength: exact.Null.Strength}
+	b.Lost = (exact.Null.Strength - ensemble.Null.Strength) / ensemble.Null.Spread()
 	n := len(ensemble.Map.X)
 	b.Difference = make([]float64, n*n)
 	for i := range n {
@@ -48,12 +52,13 @@ func NewBeside(ensemble, exact *Account) *Beside {
 
 // Warning says that the ensemble departs from weak noise, or nothing.
 func (b *Beside) Warning() string {
-	const far = 5 // standard deviations of ChiSquare; common practice, no source
-	if b.ChiSquare-1 <= far*b.Spread {
+	const far = 3 // standard deviations; common practice, no source
+	chi, lost := b.ChiSquare-1 > far*b.Spread, math.Abs(b.Lost) > far
+	if !chi && !lost {
 		return ""
 	}
-	return fmt.Sprintf("the ensemble's map departs from the exact one, which is for weak noise: χ² is %.3f a pixel where %.3f is the most that chance would make of 1; with so few atoms in a healing length the noise acts back on the flow and on itself",
-		b.ChiSquare, 1+far*b.Spread)
+	return fmt.Sprintf("the ensemble departs from the exact map, which is for weak noise: its band is %.1f standard deviations weaker, and χ² is %.3f a pixel where chance makes 1 ± %.3f; with so few atoms in a healing length the noise acts back on the flow and on itself",
+		b.Lost, b.ChiSquare, b.Spread)
 }
 
 func inside(m *correlation.Map, lo, hi float64) (points []int) {

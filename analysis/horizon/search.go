@@ -37,14 +37,16 @@ func (a *Account) expect(sides *band.Sides, in Input, span float64) (*expected, 
 func (a *Account) read(sides *band.Sides, in Input) error {
 	s, g := in.Settings, a.Predicted.Geometry()
 	kappa := 2 * math.Pi * a.Scattered
-	e, err := a.expect(sides, in, s.Span/kappa)
+	// A hot horizon's band is spread by the dispersion rather than by 1/κ.
+	span := math.Max(s.Span/kappa, s.Span/2/a.OmegaMax)
+	e, err := a.expect(sides, in, span)
 	if err != nil {
 		return err
 	}
 	a.findStrength(sides, e, s)
 	a.findLine(sides, e, kappa, s)
 
-	a.Cut = band.NewCut(sides, g, band.NewBins(g, sides.Xu, sides.Xd, s.Span/kappa))
+	a.Cut = band.NewCut(sides, g, band.NewBins(g, sides.Xu, sides.Xd, span))
 	a.PredictedCut = a.Cut.Project(e.band)
 	under := a.Cut.Project(e.background)
 	for b := range under {

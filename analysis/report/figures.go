@@ -216,7 +216,7 @@ func (r *Run) coherenceFigure() *figure.Page {
 		return nil
 	}
 	omega := u.Values(c.Omega, Rate)
-	f := figure.Cut{Ordinate: "|⟨*b*_{u} *b*_{d2}⟩|", Across: "frequency ω", Unit: u.Axis(Rate),
+	f := figure.Cut{Ordinate: "coherence of the partners, |*b*_{u} *b*_{d2}|", Across: "frequency ω", Unit: u.Axis(Rate),
 		Measured:  figure.Points{Name: a.Source(), X: omega, Y: c.Value},
 		Fit:       figure.Curve{Name: "thermal, fitted", X: omega, Y: c.Model(c.T)},
 		Predicted: []figure.Curve{{Name: "scattering, nothing free", X: omega, Y: a.PredictedCoherence}}}
