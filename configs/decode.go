@@ -28,9 +28,20 @@ func Decode(name string, text []byte) (*Config, error) {
 	if fault != nil {
 		return nil, Errors{fault}
 	}
+	return fromTree(name, text, tree, nil)
+}
+
+// fromTree reads a tree of values, of which some are overridden.
+func fromTree(name string, text []byte, tree map[string]any, override map[string]any) (*Config, error) {
 	c := &Config{Source: name, Text: text, places: findPlaces(clean(text))}
 	d := decoder{c: c, values: map[string]any{}, bad: map[string]bool{}}
 	d.flatten("", tree)
+	for key, v := range override {
+		d.values[key] = v
+		at := c.places[key]
+		at.written = fmt.Sprint(v)
+		c.places[key] = at
+	}
 	if d.units() {
 		d.fill()
 		d.require()

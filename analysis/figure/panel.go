@@ -49,6 +49,8 @@ func (p Points) edge(times float64) []float64 {
 type panel struct {
 	canvas draw.Canvas // its Rectangle is the panel, which clips
 	x, y   Range
+	// Logarithmic axes: x and y, and all that is drawn, are decadic logarithms.
+	logX, logY bool
 }
 
 // newPanel snaps the rectangle to pixels, so that images fit it.
@@ -58,7 +60,7 @@ func newPanel(c draw.Canvas, left, bottom, width, height vg.Length, x, y Range) 
 		Min: vg.Point{X: snap(left), Y: snap(bottom)},
 		Max: vg.Point{X: snap(left + width), Y: snap(bottom + height)},
 	}
-	return panel{c, x, y}
+	return panel{canvas: c, x: x, y: y}
 }
 
 // at is the place of a point.
@@ -170,7 +172,7 @@ func (p panel) frame(xLabel, yLabel string, outward bool) {
 	if p.x == p.y { // one scale, the same ticks
 		xCount = yCount
 	}
-	for _, t := range ticks(p.x, xCount) {
+	for _, t := range axisTicks(p.x, xCount, p.logX) {
 		x := p.at(t.at, 0).X
 		c.StrokeLine2(tickLine, x, r.Min.Y, x, r.Min.Y+mark(t))
 		if !outward {
@@ -181,7 +183,7 @@ func (p panel) frame(xLabel, yLabel string, outward bool) {
 		}
 	}
 	widest := vg.Length(0)
-	for _, t := range ticks(p.y, yCount) {
+	for _, t := range axisTicks(p.y, yCount, p.logY) {
 		y := p.at(0, t.at).Y
 		c.StrokeLine2(tickLine, r.Min.X, y, r.Min.X+mark(t), y)
 		if !outward {

@@ -73,6 +73,58 @@ func ticks(r Range, n int) (marks []tick) {
 	return marks
 }
 
+// axisTicks are those of a linear or a logarithmic axis.
+func axisTicks(r Range, n int, logarithmic bool) []tick {
+	if logarithmic {
+		return decades(r, n)
+	}
+	return ticks(r, n)
+}
+
+// decades puts marks on an axis of decadic logarithms: at the powers of ten,
+// every so many of them labelled, with minor marks at their multiples; where
+// there are hardly two powers the multiples 2 and 5 have labels too.
+func decades(r Range, n int) (marks []tick) {
+	first, last := int(math.Floor(r.Min)), int(math.Ceil(r.Max))
+	every := max(1, int(math.Ceil((r.Max-r.Min)/float64(n))))
+	few := r.Max-r.Min < 1.8
+	label := func(power, times int) string {
+		v := float64(times) * math.Pow(10, float64(power))
+		if few && v >= 1e-3 && v < 1e4 {
+			return number(v, max(0, -power))
+		}
+		if times != 1 {
+			return number(float64(times), 0) + "·10^{" + number(float64(power), 0) + "}"
+		}
+		return "10^{" + number(float64(power), 0) + "}"
+	}
+	for power := first; power <= last; power++ {
+		for times := 1; times < 10; times++ {
+			t := tick{at: float64(power) + math.Log10(float64(times))}
+			if t.at < r.Min-1e-9 || t.at > r.Max+1e-9 || times > 1 && every > 1 {
+				continue
+			}
+			if times == 1 && power%every == 0 || few && (times == 2 || times == 5) {
+				t.label = label(power, times)
+			}
+			marks = append(marks, t)
+		}
+	}
+	return marks
+}
+
+// logarithms returns decadic logarithms, NaN where there is none.
+func logarithms(values []float64) []float64 {
+	out := make([]float64, len(values))
+	for i, v := range values {
+		out[i] = math.NaN()
+		if v > 0 {
+			out[i] = math.Log10(v)
+		}
+	}
+	return out
+}
+
 // number writes with a proper minus sign.
 func number(v float64, decimals int) string {
 	s := strconv.FormatFloat(v, 'f', decimals, 64)

@@ -8,7 +8,6 @@ import (
 	"tailrace/analysis/horizon"
 	"tailrace/analysis/temperature"
 	"tailrace/gpe"
-	"tailrace/gpe/flow"
 	"tailrace/gpe/lab"
 )
 
@@ -58,24 +57,8 @@ func (e Engine) PerDirection(points int) float64 {
 // PerSecond returns trajectories per second of wall time.
 func (e Engine) PerSecond() float64 { return float64(e.Trajectories) / e.Wall.Seconds() }
 
-func (r *Run) state(s flow.State) object {
-	var o object
-	o.with(r.Units, "density", s.Density, Density)
-	o.with(r.Units, "velocity", s.Velocity, Speed)
-	o.with(r.Units, "sound_speed", s.SoundSpeed, Speed)
-	o.set("mach", number(s.Mach()))
-	return o
-}
-
 func (r *Run) flow(f horizon.Flow) object {
-	var h, o object
-	h.with(r.Units, "position", f.Horizon.Position, Length)
-	h.with(r.Units, "surface_gravity", f.Horizon.SurfaceGravity, Rate)
-	h.with(r.Units, "hawking_temperature", f.Horizon.Temperature, Temperature)
-	o.set("upstream", r.state(f.Upstream))
-	o.set("downstream", r.state(f.Downstream))
-	o.set("horizon", h)
-	return o
+	return r.Units.flowOf(f.Upstream, f.Downstream, f.Horizon)
 }
 
 // Result returns the object of result.json. `flow` is the theory's, and

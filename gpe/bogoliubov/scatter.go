@@ -133,6 +133,10 @@ func (s *Scattering) Temperature() float64 {
 // the horizon's emission that gets out.
 func (s *Scattering) GreyFactor() float64 { return 1 - square(s.S[U][U]) }
 
+// Transmission returns |S_d1u|², the part of a wave sent at the horizon from
+// upstream that goes through with positive norm.
+func (s *Scattering) Transmission() float64 { return square(s.S[D1][U]) }
+
 // HorizonTemperature returns the temperature of which the emission is Γ times
 // that of a black body: ω/ln(|S_ud1|²/|S_ud2|²); 0 above ω_max.
 func (s *Scattering) HorizonTemperature() float64 {
