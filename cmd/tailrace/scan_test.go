@@ -24,7 +24,7 @@ func TestBadScan(t *testing.T) {
 		{"sluice", "width=1:2:1000000000", `the count is "1000000000", a whole number from 2 to 10000 is expected` + form},
 		{"sluice", "width=1 um:2 um:3", `flow.width is a plain number here, without "um"` + form},
 		{"sluice", "title=1:2:3", "title is not a number that can be scanned" + form},
-		{"quay", "length=1 um:2 um:3", `"length" may be trap.length or grid.length: say which` + form},
+		{"quay", "length=1 um:2 um:3", `"length" may be trap.length or cavity.length or grid.length: say which` + form},
 		{"quay", "step.speed=0.1:0.2:3", "step.speed: a speed needs a unit" + form},
 		{"quay", "step.speed=0.1 mm/s:200 um/s:3", `from is in "mm/s" and to in "um/s": give both in one unit` + form},
 		{"quay", "step.speed=0.1 um:0.2 um:3", "step.speed: a speed is expected, and um is a unit of length" + form},
