@@ -4709,16 +4709,18 @@ phaseCubicSingleAVX512next:
 	VFMADD213PS.BCST number47<>+0(SB), Z5, Z7
 	VFMADD213PS.BCST number48<>+0(SB), Z5, Z6
 	VFMADD213PS.BCST number49<>+0(SB), Z5, Z7
-	VFMADD213PS.BCST number50<>+0(SB), Z5, Z7
 	VMULPS           Z4, Z6, Z4
-	VPXORD           Z3, Z4, Z4
+	VMULPS           Z5, Z7, Z5
+	VMOVAPS          Z1, Z6
+	VFMADD231PS      Z4, Z2, Z6
+	VFMADD231PS      Z5, Z1, Z6
+	VMOVAPS          Z2, Z7
+	VFNMADD231PS     Z4, Z1, Z7
+	VFMADD231PS      Z5, Z2, Z7
+	VPXORD           Z3, Z6, Z6
 	VPXORD           Z3, Z7, Z7
-	VMULPS           Z7, Z1, Z3
-	VMULPS           Z7, Z2, Z5
-	VFMADD231PS      Z4, Z2, Z3
-	VFNMADD231PS     Z4, Z1, Z5
-	VMOVUPS          Z3, (AX)
-	VMOVUPS          Z5, (CX)
+	VMOVUPS          Z6, (AX)
+	VMOVUPS          Z7, (CX)
 	ADDQ             $0x40, AX
 	ADDQ             $0x40, CX
 	ADDQ             $0x04, DX
@@ -4764,9 +4766,6 @@ GLOBL number48<>(SB), RODATA|NOPTR, $4
 DATA number49<>+0(SB)/4, $(-4.934802)
 GLOBL number49<>(SB), RODATA|NOPTR, $4
 
-DATA number50<>+0(SB)/4, $(1.0)
-GLOBL number50<>(SB), RODATA|NOPTR, $4
-
 // func phaseShiftedSingleAVX512(re *float32, im *float32, potential *float32, coupling *float32, density *float32, points int)
 // Requires: AVX, AVX512F
 TEXT ·phaseShiftedSingleAVX512(SB), NOSPLIT, $0-48
@@ -4804,16 +4803,18 @@ phaseShiftedSingleAVX512next:
 	VFMADD213PS.BCST number47<>+0(SB), Z5, Z7
 	VFMADD213PS.BCST number48<>+0(SB), Z5, Z6
 	VFMADD213PS.BCST number49<>+0(SB), Z5, Z7
-	VFMADD213PS.BCST number50<>+0(SB), Z5, Z7
 	VMULPS           Z4, Z6, Z4
-	VPXORD           Z3, Z4, Z4
+	VMULPS           Z5, Z7, Z5
+	VMOVAPS          Z1, Z6
+	VFMADD231PS      Z4, Z2, Z6
+	VFMADD231PS      Z5, Z1, Z6
+	VMOVAPS          Z2, Z7
+	VFNMADD231PS     Z4, Z1, Z7
+	VFMADD231PS      Z5, Z2, Z7
+	VPXORD           Z3, Z6, Z6
 	VPXORD           Z3, Z7, Z7
-	VMULPS           Z7, Z1, Z3
-	VMULPS           Z7, Z2, Z5
-	VFMADD231PS      Z4, Z2, Z3
-	VFNMADD231PS     Z4, Z1, Z5
-	VMOVUPS          Z3, (AX)
-	VMOVUPS          Z5, (CX)
+	VMOVUPS          Z6, (AX)
+	VMOVUPS          Z7, (CX)
 	ADDQ             $0x40, AX
 	ADDQ             $0x40, CX
 	ADDQ             $0x04, DX
@@ -4878,16 +4879,18 @@ phaseSwollenSingleAVX512next:
 	VFMADD213PS.BCST number47<>+0(SB), Z7, Z9
 	VFMADD213PS.BCST number48<>+0(SB), Z7, Z8
 	VFMADD213PS.BCST number49<>+0(SB), Z7, Z9
-	VFMADD213PS.BCST number50<>+0(SB), Z7, Z9
 	VMULPS           Z6, Z8, Z6
-	VPXORD           Z5, Z6, Z6
+	VMULPS           Z7, Z9, Z7
+	VMOVAPS          Z3, Z8
+	VFMADD231PS      Z6, Z4, Z8
+	VFMADD231PS      Z7, Z3, Z8
+	VMOVAPS          Z4, Z9
+	VFNMADD231PS     Z6, Z3, Z9
+	VFMADD231PS      Z7, Z4, Z9
+	VPXORD           Z5, Z8, Z8
 	VPXORD           Z5, Z9, Z9
-	VMULPS           Z9, Z3, Z5
-	VMULPS           Z9, Z4, Z7
-	VFMADD231PS      Z6, Z4, Z5
-	VFNMADD231PS     Z6, Z3, Z7
-	VMOVUPS          Z5, (AX)
-	VMOVUPS          Z7, (CX)
+	VMOVUPS          Z8, (AX)
+	VMOVUPS          Z9, (CX)
 	ADDQ             $0x40, AX
 	ADDQ             $0x40, CX
 	ADDQ             $0x04, DX
@@ -4897,6 +4900,9 @@ phaseSwollenSingleAVX512next:
 	JNZ              phaseSwollenSingleAVX512next
 	VZEROUPPER
 	RET
+
+DATA number50<>+0(SB)/4, $(1.0)
+GLOBL number50<>(SB), RODATA|NOPTR, $4
 
 DATA number51<>+0(SB)/4, $(4.0)
 GLOBL number51<>(SB), RODATA|NOPTR, $4
@@ -6188,17 +6194,18 @@ phaseCubicSingleAVX2next:
 	VFMADD213PS  Y8, Y5, Y6
 	VBROADCASTSS number49<>+0(SB), Y8
 	VFMADD213PS  Y8, Y5, Y7
-	VBROADCASTSS number50<>+0(SB), Y8
-	VFMADD213PS  Y8, Y5, Y7
 	VMULPS       Y4, Y6, Y4
-	VXORPS       Y3, Y4, Y4
+	VMULPS       Y5, Y7, Y5
+	VMOVAPS      Y1, Y6
+	VFMADD231PS  Y4, Y2, Y6
+	VFMADD231PS  Y5, Y1, Y6
+	VMOVAPS      Y2, Y7
+	VFNMADD231PS Y4, Y1, Y7
+	VFMADD231PS  Y5, Y2, Y7
+	VXORPS       Y3, Y6, Y6
 	VXORPS       Y3, Y7, Y7
-	VMULPS       Y7, Y1, Y3
-	VMULPS       Y7, Y2, Y5
-	VFMADD231PS  Y4, Y2, Y3
-	VFNMADD231PS Y4, Y1, Y5
-	VMOVUPS      Y3, (AX)
-	VMOVUPS      Y5, (CX)
+	VMOVUPS      Y6, (AX)
+	VMOVUPS      Y7, (CX)
 	VMOVUPS      32(AX), Y1
 	VMOVUPS      32(CX), Y2
 	VMULPS       Y1, Y1, Y3
@@ -6229,17 +6236,18 @@ phaseCubicSingleAVX2next:
 	VFMADD213PS  Y8, Y5, Y6
 	VBROADCASTSS number49<>+0(SB), Y8
 	VFMADD213PS  Y8, Y5, Y7
-	VBROADCASTSS number50<>+0(SB), Y8
-	VFMADD213PS  Y8, Y5, Y7
 	VMULPS       Y4, Y6, Y4
-	VXORPS       Y3, Y4, Y4
+	VMULPS       Y5, Y7, Y5
+	VMOVAPS      Y1, Y6
+	VFMADD231PS  Y4, Y2, Y6
+	VFMADD231PS  Y5, Y1, Y6
+	VMOVAPS      Y2, Y7
+	VFNMADD231PS Y4, Y1, Y7
+	VFMADD231PS  Y5, Y2, Y7
+	VXORPS       Y3, Y6, Y6
 	VXORPS       Y3, Y7, Y7
-	VMULPS       Y7, Y1, Y3
-	VMULPS       Y7, Y2, Y5
-	VFMADD231PS  Y4, Y2, Y3
-	VFNMADD231PS Y4, Y1, Y5
-	VMOVUPS      Y3, 32(AX)
-	VMOVUPS      Y5, 32(CX)
+	VMOVUPS      Y6, 32(AX)
+	VMOVUPS      Y7, 32(CX)
 	ADDQ         $0x40, AX
 	ADDQ         $0x40, CX
 	ADDQ         $0x04, DX
@@ -6294,17 +6302,18 @@ phaseShiftedSingleAVX2next:
 	VFMADD213PS  Y8, Y5, Y6
 	VBROADCASTSS number49<>+0(SB), Y8
 	VFMADD213PS  Y8, Y5, Y7
-	VBROADCASTSS number50<>+0(SB), Y8
-	VFMADD213PS  Y8, Y5, Y7
 	VMULPS       Y4, Y6, Y4
-	VXORPS       Y3, Y4, Y4
+	VMULPS       Y5, Y7, Y5
+	VMOVAPS      Y1, Y6
+	VFMADD231PS  Y4, Y2, Y6
+	VFMADD231PS  Y5, Y1, Y6
+	VMOVAPS      Y2, Y7
+	VFNMADD231PS Y4, Y1, Y7
+	VFMADD231PS  Y5, Y2, Y7
+	VXORPS       Y3, Y6, Y6
 	VXORPS       Y3, Y7, Y7
-	VMULPS       Y7, Y1, Y3
-	VMULPS       Y7, Y2, Y5
-	VFMADD231PS  Y4, Y2, Y3
-	VFNMADD231PS Y4, Y1, Y5
-	VMOVUPS      Y3, (AX)
-	VMOVUPS      Y5, (CX)
+	VMOVUPS      Y6, (AX)
+	VMOVUPS      Y7, (CX)
 	VMOVUPS      32(AX), Y1
 	VMOVUPS      32(CX), Y2
 	VMULPS       Y1, Y1, Y3
@@ -6337,17 +6346,18 @@ phaseShiftedSingleAVX2next:
 	VFMADD213PS  Y8, Y5, Y6
 	VBROADCASTSS number49<>+0(SB), Y8
 	VFMADD213PS  Y8, Y5, Y7
-	VBROADCASTSS number50<>+0(SB), Y8
-	VFMADD213PS  Y8, Y5, Y7
 	VMULPS       Y4, Y6, Y4
-	VXORPS       Y3, Y4, Y4
+	VMULPS       Y5, Y7, Y5
+	VMOVAPS      Y1, Y6
+	VFMADD231PS  Y4, Y2, Y6
+	VFMADD231PS  Y5, Y1, Y6
+	VMOVAPS      Y2, Y7
+	VFNMADD231PS Y4, Y1, Y7
+	VFMADD231PS  Y5, Y2, Y7
+	VXORPS       Y3, Y6, Y6
 	VXORPS       Y3, Y7, Y7
-	VMULPS       Y7, Y1, Y3
-	VMULPS       Y7, Y2, Y5
-	VFMADD231PS  Y4, Y2, Y3
-	VFNMADD231PS Y4, Y1, Y5
-	VMOVUPS      Y3, 32(AX)
-	VMOVUPS      Y5, 32(CX)
+	VMOVUPS      Y6, 32(AX)
+	VMOVUPS      Y7, 32(CX)
 	ADDQ         $0x40, AX
 	ADDQ         $0x40, CX
 	ADDQ         $0x04, DX
@@ -6420,17 +6430,18 @@ phaseSwollenSingleAVX2next:
 	VFMADD213PS  Y10, Y7, Y8
 	VBROADCASTSS number49<>+0(SB), Y10
 	VFMADD213PS  Y10, Y7, Y9
-	VBROADCASTSS number50<>+0(SB), Y10
-	VFMADD213PS  Y10, Y7, Y9
 	VMULPS       Y6, Y8, Y6
-	VXORPS       Y5, Y6, Y6
+	VMULPS       Y7, Y9, Y7
+	VMOVAPS      Y3, Y8
+	VFMADD231PS  Y6, Y4, Y8
+	VFMADD231PS  Y7, Y3, Y8
+	VMOVAPS      Y4, Y9
+	VFNMADD231PS Y6, Y3, Y9
+	VFMADD231PS  Y7, Y4, Y9
+	VXORPS       Y5, Y8, Y8
 	VXORPS       Y5, Y9, Y9
-	VMULPS       Y9, Y3, Y5
-	VMULPS       Y9, Y4, Y7
-	VFMADD231PS  Y6, Y4, Y5
-	VFNMADD231PS Y6, Y3, Y7
-	VMOVUPS      Y5, (AX)
-	VMOVUPS      Y7, (CX)
+	VMOVUPS      Y8, (AX)
+	VMOVUPS      Y9, (CX)
 	VMOVUPS      32(AX), Y3
 	VMOVUPS      32(CX), Y4
 	VMULPS       Y3, Y3, Y5
@@ -6478,17 +6489,18 @@ phaseSwollenSingleAVX2next:
 	VFMADD213PS  Y10, Y7, Y8
 	VBROADCASTSS number49<>+0(SB), Y10
 	VFMADD213PS  Y10, Y7, Y9
-	VBROADCASTSS number50<>+0(SB), Y10
-	VFMADD213PS  Y10, Y7, Y9
 	VMULPS       Y6, Y8, Y6
-	VXORPS       Y5, Y6, Y6
+	VMULPS       Y7, Y9, Y7
+	VMOVAPS      Y3, Y8
+	VFMADD231PS  Y6, Y4, Y8
+	VFMADD231PS  Y7, Y3, Y8
+	VMOVAPS      Y4, Y9
+	VFNMADD231PS Y6, Y3, Y9
+	VFMADD231PS  Y7, Y4, Y9
+	VXORPS       Y5, Y8, Y8
 	VXORPS       Y5, Y9, Y9
-	VMULPS       Y9, Y3, Y5
-	VMULPS       Y9, Y4, Y7
-	VFMADD231PS  Y6, Y4, Y5
-	VFNMADD231PS Y6, Y3, Y7
-	VMOVUPS      Y5, 32(AX)
-	VMOVUPS      Y7, 32(CX)
+	VMOVUPS      Y8, 32(AX)
+	VMOVUPS      Y9, 32(CX)
 	ADDQ         $0x40, AX
 	ADDQ         $0x40, CX
 	ADDQ         $0x04, DX

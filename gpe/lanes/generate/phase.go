@@ -16,9 +16,9 @@ var (
 		4.147269028728277e-06, -0.00010456453928528452, 0.0019295555721679475, -0.02580688861695975,
 		0.2353306301195154, -1.3352627688431513, 4.058712126416504, -4.934802200544677, 1,
 	}
-	// Those of rotate_single.go.
+	// Those of rotate_single.go: there, cos − 1 over the square of the argument.
 	sineSingle   = []float64{0.0764338076115, -0.597625374794, 2.54995775223, -5.16770219803, 3.14159250259}
-	cosineSingle = []float64{-0.0239638742059, 0.234683766961, -1.33516156673, 4.0587053299, -4.93480205536, 1}
+	cosineSingle = []float64{-0.0239638742059, 0.234683766961, -1.33516156673, 4.0587053299, -4.93480205536}
 )
 
 type law int
@@ -111,12 +111,22 @@ func (m machine) phase(name, sig string, l law) {
 			}
 		}
 		sin = m.mul(sin, part)
-		m.flip(sin, sign)
-		m.flip(cos, sign)
 		// (re + i im)(cos − i sin)
-		newRe, newIm := m.mul(x.re, cos), m.mul(x.im, cos)
-		m.plus(newRe, x.im, sin)
-		m.minus(newIm, x.re, sin)
+		var newRe, newIm vec
+		if m.single {
+			// With cos − 1 a small phase turns to the full precision of x.
+			less := m.mul(cos, square)
+			newRe = m.plus(m.plus(m.copy(x.re), x.im, sin), x.re, less)
+			newIm = m.plus(m.minus(m.copy(x.im), x.re, sin), x.im, less)
+			m.flip(newRe, sign)
+			m.flip(newIm, sign)
+		} else {
+			m.flip(sin, sign)
+			m.flip(cos, sign)
+			newRe, newIm = m.mul(x.re, cos), m.mul(x.im, cos)
+			m.plus(newRe, x.im, sin)
+			m.minus(newIm, x.re, sin)
+		}
 		m.store(newRe, Mem{Base: re, Disp: offset})
 		m.store(newIm, Mem{Base: im, Disp: offset})
 	}
