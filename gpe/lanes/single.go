@@ -21,6 +21,16 @@ func Store(b *Batch, s *Single, h int) {
 	store(rows(b.Im), rows(s.Im), h)
 }
 
+// Clear sets half h of s to zero.
+func Clear(s *Single, h int) {
+	s.check()
+	for _, half := range [][][Width]float32{rows(s.Re), rows(s.Im)} {
+		for j := h; j < len(half); j += SingleWidth / Width {
+			half[j] = [Width]float32{}
+		}
+	}
+}
+
 func load(to [][Width]float32, h int, from [][Width]float64) {
 	for j := range from {
 		x, y := &from[j], &to[2*j+h]
