@@ -52,10 +52,15 @@ func newSplitStep(tb testing.TB, n int) *splitStep {
 
 // do is one Strang step with its two half phases merged into one.
 func (p *splitStep) do() {
+	p.advance()
+	Phase(p.batch, p.v, p.g)
+}
+
+// advance is do without the phase.
+func (p *splitStep) advance() {
 	p.plan.Propagate(p.batch, p.kinetic)
 	p.position += 0.01
 	p.step.Fill(p.v, nil, 1, p.position, 0.02/math.Pi)
-	Phase(p.batch, p.v, p.g)
 }
 
 // perPoint reports the time per grid point, step and trajectory.

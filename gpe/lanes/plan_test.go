@@ -32,6 +32,7 @@ var eights = func() kernel {
 		}
 		return append(r, 8)
 	}
+	k.single.radices = k.double.radices
 	return k
 }()
 

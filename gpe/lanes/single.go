@@ -21,9 +21,12 @@ func Store(b *Batch, s *Single, h int) {
 	store(rows(b.Im), rows(s.Im), h)
 }
 
-// Clear sets half h of s to zero.
+// Clear sets half h of s to zero. It panics if h is neither 0 nor 1.
 func Clear(s *Single, h int) {
 	s.check()
+	if h != 0 && h != 1 {
+		panic(fmt.Sprintf("lanes: half %d; halves are 0 and 1", h))
+	}
 	for _, half := range [][][Width]float32{rows(s.Re), rows(s.Im)} {
 		for j := h; j < len(half); j += SingleWidth / Width {
 			half[j] = [Width]float32{}
