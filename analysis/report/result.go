@@ -22,12 +22,14 @@ type Run struct {
 	Checks                 []lab.Check
 	Warnings               []string
 	Engine                 Engine
+	Rounding               *horizon.Rounding // nil in double precision
 	SpaceTime              SpaceTime
 }
 
 // Engine is how fast the ensemble ran.
 type Engine struct {
 	Kernel          string
+	Precision       gpe.Precision
 	Workers         int
 	Steps           int           // time steps of a trajectory
 	StepTime        time.Duration // in time steps, summed over workers
