@@ -31,7 +31,6 @@ func (m machine) sqrtHalf(radix int) vec {
 type legs struct {
 	base, far      reg.GPVirtual // legs 0 and 4
 	stride, thrice reg.GPVirtual
-	distant        bool
 }
 
 // at returns the address of leg q.
