@@ -9,9 +9,13 @@ import (
 	"tailrace/gpe/lab"
 )
 
-// RoundingTrial is how many trajectories are carried in both precisions to see
-// what single precision does to the map.
-const RoundingTrial = 32
+// RoundingTrial returns how many of an ensemble's trajectories are carried in
+// both precisions to see what single precision does to the map: one in 128, so
+// that neither the share of time that it takes nor the share of chance in the
+// answer depends on the ensemble, and 32 at least.
+func RoundingTrial(trajectories int) int {
+	return min(trajectories, max(32, trajectories/128))
+}
 
 // roundingLimit is how far single precision may move the map, in units of its
 // statistical error: a fifth adds 2 % to it where both add in squares.

@@ -85,6 +85,14 @@ func TestRounding(t *testing.T) {
 	}
 }
 
+func TestRoundingTrial(t *testing.T) {
+	for _, c := range [][2]int{{2, 2}, {31, 31}, {60, 32}, {4096, 32}, {8192, 64}, {65536, 512}} {
+		if got := RoundingTrial(c[0]); got != c[1] {
+			t.Errorf("%d of %d trajectories are tried, want %d", got, c[0], c[1])
+		}
+	}
+}
+
 func TestRoundingWithoutCloud(t *testing.T) {
 	a := roundingAccount()
 	a.Window.DownFar = 200

@@ -18,7 +18,7 @@ func (r *running) tryPrecision(ctx context.Context) error {
 	if r.scenario.Problem.Precision != gpe.Single {
 		return nil
 	}
-	count := min(horizon.RoundingTrial, r.config.Ensemble.Trajectories)
+	count := horizon.RoundingTrial(r.config.Ensemble.Trajectories)
 	trial := func(precision gpe.Precision) (moments.Shots, error) {
 		p := *r.scenario.Problem
 		p.Precision = precision

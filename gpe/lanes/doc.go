@@ -69,7 +69,7 @@
 // point is two rows of eight lanes, neighbours with the same twiddles. It gains
 // nothing, and is there so that a scenario runs on every machine.
 //
-// A transform is within 5e-8 to 3e-7 of the one in double precision, a hundred
+// A transform is within 7e-8 to 1.4e-7 of the one in double precision, a hundred
 // steps within 6e-6. The norm falls by 3e-8 to 1e-7 a step, always in the same
 // direction: √½ and other twiddles are the same rounded number at every step.
 // The phase that goes with it is common to all points of a uniform cloud, so
