@@ -7,6 +7,7 @@ package configs
 import (
 	"strings"
 
+	"tailrace/gpe"
 	"tailrace/gpe/lab"
 )
 
@@ -140,6 +141,7 @@ type Ensemble struct {
 	Trajectories int
 	Seed         uint64
 	NoiseCutoff  float64 // largest |k| of the noise in 1/ξ; zero for every mode of the grid
+	Precision    gpe.Precision
 }
 
 // Record says when the density is recorded.

@@ -8,6 +8,7 @@ import (
 
 	"github.com/pelletier/go-toml/v2"
 
+	"tailrace/gpe"
 	"tailrace/gpe/lab"
 )
 
@@ -106,6 +107,9 @@ func TestDefaults(t *testing.T) {
 	if c.Cloud.Radial != lab.Frozen {
 		t.Errorf("radial = %q", c.Cloud.Radial)
 	}
+	if c.Ensemble.Precision != gpe.Double {
+		t.Errorf("precision = %q", c.Ensemble.Precision)
+	}
 	species, err := lab.SpeciesByName("Rb-87")
 	if err != nil {
 		t.Fatal(err)
@@ -122,6 +126,20 @@ func TestDefaults(t *testing.T) {
 	}
 	if !c.Sweep() {
 		t.Error("not a sweep")
+	}
+}
+
+func TestPrecisionReachesTheProblem(t *testing.T) {
+	for _, want := range []gpe.Precision{gpe.Double, gpe.Single} {
+		c := decode(t, set(t, sound, "ensemble.precision", `"`+string(want)+`"`))
+		c.Record.Times = []float64{1e-3}
+		s, err := c.Scenario()
+		if err != nil {
+			t.Fatal(err)
+		}
+		if s.Problem.Precision != want {
+			t.Errorf("precision = %q, want %q", s.Problem.Precision, want)
+		}
 	}
 }
 

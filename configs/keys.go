@@ -6,6 +6,7 @@ import (
 	"strconv"
 	"strings"
 
+	"tailrace/gpe"
 	"tailrace/gpe/lab"
 )
 
@@ -275,6 +276,9 @@ var keys = []*key{
 	{name: "ensemble.noise_cutoff", kind: number, lab: above("0", "1000"), automatic: "every mode that the grid holds", example: "6",
 		meaning: "largest |k| of the noise in 1/ξ, in either kind of units",
 		field:   func(c *Config) any { return &c.Ensemble.NoiseCutoff }},
+	{name: "ensemble.precision", kind: choice, choices: []string{string(gpe.Double), string(gpe.Single)}, fallback: `"double"`, example: `"double"`,
+		meaning: "precision of the time steps: `double`, or `single`, about twice as fast with vector units; `run` first carries a few trajectories in both and refuses `single` where it would move the map by more than a fifth of its statistical error",
+		field:   func(c *Config) any { return (*string)(&c.Ensemble.Precision) }},
 
 	{name: "record.times", kind: quantities, dim: duration, lab: above("0 ms", "1000 s"), condensate: above("0", "1e7"), example: `["90 ms", "170 ms"]`, plain: "[60, 110]",
 		meaning: "times since the sweep began, increasing, at most 64",

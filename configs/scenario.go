@@ -178,7 +178,7 @@ func (s *Scenario) cloud(z sizes, law fluid.Law) (*gpe.Problem, error) {
 	}
 	s.Sweep = sweep
 	s.Problem = &gpe.Problem{Grid: grid, Law: law, Landscape: sweep, Ground: ground, Temperature: z.temperature,
-		Cutoff: c.Ensemble.NoiseCutoff, Scheme: gpe.Strang(), TimeStep: z.timeStep, Times: z.times, Seed: c.Ensemble.Seed}
+		Cutoff: c.Ensemble.NoiseCutoff, Scheme: gpe.Strang(), TimeStep: z.timeStep, Times: z.times, Seed: c.Ensemble.Seed, Precision: c.Ensemble.Precision}
 	return s.Problem, s.timeStep()
 }
 
@@ -264,7 +264,7 @@ func goodLength(n int) int {
 // grid's limit stands in until AddNoise can choose one.
 func (s *Scenario) timeStep() error {
 	p := s.Problem
-	limit := p.Grid.MaxTimeStep()
+	limit := p.LongestStep()
 	if p.TimeStep == 0 {
 		p.TimeStep = stepShare * limit
 	}
@@ -314,7 +314,7 @@ func (c *Config) ring() (*Scenario, error) {
 	s.Switch = land
 	s.Problem = &gpe.Problem{Grid: g, Law: fluid.Cubic(), Landscape: land, Ground: gpe.UniformGround(g, fluid.Cubic()),
 		AtomsPerLength: c.Cloud.Atoms / length, Temperature: z.temperature, Cutoff: c.Ensemble.NoiseCutoff,
-		Scheme: gpe.Strang(), TimeStep: z.timeStep, Times: z.times, Seed: c.Ensemble.Seed}
+		Scheme: gpe.Strang(), TimeStep: z.timeStep, Times: z.times, Seed: c.Ensemble.Seed, Precision: c.Ensemble.Precision}
 	if err := s.timeStep(); err != nil {
 		return nil, err
 	}

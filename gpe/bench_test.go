@@ -12,27 +12,54 @@ import (
 // its energy balance, in ns per grid point and step of one trajectory.
 func BenchmarkSplitStep(b *testing.B) {
 	for _, n := range []int{1024, 2048, 4096} {
+		prop, batch := benchPropagator(b, n), benchBatch(n)
 		b.Run(fmt.Sprint(n), func(b *testing.B) {
-			g := NewGrid(n, 0.35*float64(n), -0.2*float64(n))
-			box := Box{Length: 0.15 * float64(n), WallWidth: 1, WallHeight: 6}
-			land := NewSweep(g, Sweep{Trap: box, Depth: 1, Width: 0.5, Speed: 0.5, Start: box.RightEdge()})
-			const steps = 20
-			prop, err := NewPropagator(g, fluid.Cubic(), land, nil, Strang(), 0.05, []float64{0.05 * steps})
-			if err != nil {
-				b.Fatal(err)
-			}
-			batch := lanes.NewBatch(n)
-			for i := range batch.Re {
-				batch.Re[i] = 1
-			}
 			w := prop.NewWalker(true)
 			b.ReportAllocs()
 			for b.Loop() {
 				w.Leg(batch, 0)
 			}
-			b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N)/float64(steps*n*lanes.Width), "ns/point")
+			b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N)/float64(benchSteps*n*lanes.Width), "ns/point")
 		})
 	}
+}
+
+// BenchmarkSplitStepSingle is the same in single precision, with the way there
+// and back.
+func BenchmarkSplitStepSingle(b *testing.B) {
+	for _, n := range []int{1024, 2048, 4096} {
+		prop, pair := benchPropagator(b, n), []*lanes.Batch{benchBatch(n), benchBatch(n)}
+		b.Run(fmt.Sprint(n), func(b *testing.B) {
+			w := prop.Single().NewWalker(true)
+			b.ReportAllocs()
+			for b.Loop() {
+				w.Leg(pair, 0)
+			}
+			b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N)/float64(benchSteps*n*lanes.SingleWidth), "ns/point")
+		})
+	}
+}
+
+const benchSteps = 200
+
+func benchPropagator(b *testing.B, n int) *Propagator {
+	b.Helper()
+	g := NewGrid(n, 0.35*float64(n), -0.2*float64(n))
+	box := Box{Length: 0.15 * float64(n), WallWidth: 1, WallHeight: 6}
+	land := NewSweep(g, Sweep{Trap: box, Depth: 1, Width: 0.5, Speed: 0.5, Start: box.RightEdge()})
+	prop, err := NewPropagator(g, fluid.Cubic(), land, nil, Strang(), 0.05, []float64{0.05 * benchSteps})
+	if err != nil {
+		b.Fatal(err)
+	}
+	return prop
+}
+
+func benchBatch(n int) *lanes.Batch {
+	batch := lanes.NewBatch(n)
+	for i := range batch.Re {
+		batch.Re[i] = 1
+	}
+	return batch
 }
 
 // BenchmarkNoise is the initial noise of a trapped cloud, in ms per trajectory.

@@ -8,6 +8,7 @@ import (
 	"fmt"
 	"io"
 	"math"
+	"slices"
 	"sync"
 	"time"
 
@@ -28,6 +29,7 @@ type Problem struct {
 	Cutoff         float64 // of the noise, 0 for the whole grid
 	Scheme         Scheme
 	TimeStep       float64
+	Precision      Precision // of the time steps
 	Times          []float64 // recorded, rising, from 0
 	Seed           uint64
 }
@@ -90,6 +92,7 @@ type Sink interface {
 type Ensemble struct {
 	Problem    *Problem
 	propagator *Propagator
+	single     *SinglePropagator // nil in double precision
 }
 
 // NewEnsemble prepares the trajectories of p. It returns the errors of
@@ -101,7 +104,11 @@ func NewEnsemble(p *Problem) (*Ensemble, error) {
 	if err != nil {
 		return nil, err
 	}
-	return &Ensemble{Problem: p, propagator: prop}, nil
+	e := &Ensemble{Problem: p, propagator: prop}
+	if p.Precision == Single {
+		e.single = prop.Single()
+	}
+	return e, nil
 }
 
 // Steps returns the time steps of one trajectory.
@@ -119,6 +126,14 @@ func (e *DensityError) Error() string {
 	return fmt.Sprintf("trajectory %d has density %.3g n₀ at time %.4g ħ/mc²: the time step is too long for this grid, or the potential too deep", e.Trajectory, e.Density, e.Time)
 }
 
+// together returns how many batches a worker carries side by side.
+func (e *Ensemble) together() int {
+	if e.single != nil {
+		return lanes.SingleWidth / lanes.Width
+	}
+	return 1
+}
+
 // Run carries the given batches (batch i is trajectories 8i to 8i+7) through
 // all recorded times on the given number of workers, and hands them to sink;
 // of the last batch only trajectories below count do count. A trajectory
@@ -127,12 +142,12 @@ func (e *DensityError) Error() string {
 func (e *Ensemble) Run(ctx context.Context, batches []int, count, workers int, sink Sink) error {
 	ctx, cancel := context.WithCancelCause(ctx)
 	defer cancel(nil)
-	queue := make(chan int)
+	queue := make(chan []int)
 	go func() {
 		defer close(queue)
-		for _, b := range batches {
+		for lot := range slices.Chunk(batches, e.together()) {
 			select {
-			case queue <- b:
+			case queue <- lot:
 			case <-ctx.Done():
 				return
 			}
@@ -142,11 +157,11 @@ func (e *Ensemble) Run(ctx context.Context, batches []int, count, workers int, s
 	for range max(1, workers) {
 		wg.Go(func() {
 			w := newWorker(e)
-			for b := range queue {
+			for lot := range queue {
 				if ctx.Err() != nil {
 					return
 				}
-				if err := w.batch(b*lanes.Width, min(lanes.Width, count-b*lanes.Width), sink); err != nil {
+				if err := w.carry(lot, count, sink); err != nil {
 					cancel(err)
 					return
 				}
@@ -158,57 +173,6 @@ func (e *Ensemble) Run(ctx context.Context, batches []int, count, workers int, s
 		return err
 	}
 	return ctx.Err()
-}
-
-type worker struct {
-	e                *Ensemble
-	walker           *Walker
-	batchField       *lanes.Batch
-	density, current []float64
-}
-
-func newWorker(e *Ensemble) *worker {
-	n := e.Problem.Grid.N * lanes.Width
-	return &worker{e: e, walker: e.propagator.NewWalker(true), batchField: lanes.NewBatch(e.Problem.Grid.N),
-		density: make([]float64, n), current: make([]float64, n)}
-}
-
-func (w *worker) batch(first, count int, sink Sink) error {
-	p, b := w.e.Problem, w.batchField
-	if err := p.Noise.Sample(b, p.Seed, first); err != nil {
-		return err
-	}
-	w.walker.Reset()
-	norm, energy := w.walker.Norms(b), w.walker.Energies(b, 0)
-	var steps time.Duration
-	for i, t := range p.Times {
-		start := time.Now()
-		w.walker.Leg(b, i)
-		steps += time.Since(start)
-		w.walker.Currents(w.current, b)
-		for j := range w.density {
-			re, im := b.Re[j], b.Im[j]
-			rho := re*re + im*im
-			if !(rho < MaxDensity) {
-				return &DensityError{Trajectory: first + j%lanes.Width, Time: t, Density: rho}
-			}
-			w.density[j] = Quantise(rho)
-			w.current[j] = Quantise(w.current[j])
-		}
-		if err := sink.Accept(Record{Time: i, First: first, Count: count, Density: w.density, Current: w.current}); err != nil {
-			return err
-		}
-	}
-	normAfter, energyAfter := w.walker.Norms(b), w.walker.Energies(b, p.Times[len(p.Times)-1])
-	kept := make([]Conserved, count)
-	for l := range kept {
-		kept[l] = Conserved{
-			NormDrift:   normAfter[l]/norm[l] - 1,
-			EnergyDrift: (energyAfter[l] - energy[l] - w.walker.Work[l]) / p.Ground.Atoms,
-		}
-	}
-	sink.Finish(first, kept, steps)
-	return nil
 }
 
 // Quantise rounds to a multiple of Quantum.
@@ -265,5 +229,8 @@ func (p *Problem) Fingerprint() int64 {
 		put(table...)
 	}
 	io.WriteString(h, p.Scheme.Name)
+	if p.Precision == Single { // what was said of problems in double precision stays
+		io.WriteString(h, string(p.Precision))
+	}
 	return int64(binary.LittleEndian.Uint64(h.Sum(nil)) >> 12)
 }

@@ -43,7 +43,9 @@ func (k *keep) Finish(_ int, c []Conserved, _ time.Duration) {
 	}
 }
 
-func smallEnsemble(t testing.TB) *Ensemble {
+func smallEnsemble(t testing.TB) *Ensemble { return smallEnsembleIn(t, Double) }
+
+func smallEnsembleIn(t testing.TB, precision Precision) *Ensemble {
 	t.Helper()
 	p := smoothSweep(t, fluid.Cubic())
 	modes, err := FindModes(p.Ground, 0)
@@ -52,6 +54,7 @@ func smallEnsemble(t testing.TB) *Ensemble {
 	}
 	p.Noise = NewTrappedNoise(p.Ground, modes, 0.1, p.AtomsPerLength, 0)
 	p.Scheme, p.TimeStep, p.Times, p.Seed = Strang(), 0.05, []float64{1, 2}, 9
+	p.Precision = precision
 	e, err := NewEnsemble(p)
 	if err != nil {
 		t.Fatal(err)
@@ -60,36 +63,44 @@ func smallEnsemble(t testing.TB) *Ensemble {
 }
 
 // Records are the same bit by bit for any number of workers, for a run cut in
-// two, and for an ensemble that does not fill its last batch.
+// two, and for an ensemble that does not fill its last batch; in single
+// precision also for whichever batches are carried side by side.
 func TestEnsembleIsDeterministic(t *testing.T) {
-	e := smallEnsemble(t)
-	run := func(batches []int, count, workers int, into *keep) {
-		if err := e.Run(context.Background(), batches, count, workers, into); err != nil {
-			t.Fatal(err)
-		}
-	}
-	fresh := func() *keep { return &keep{density: map[int][]float64{}} }
-	one := fresh()
-	run([]int{0, 1, 2, 3}, 30, 1, one)
-	if one.finished != 30 || len(one.density) != 60 {
-		t.Fatalf("%d finished, %d records", one.finished, len(one.density))
-	}
-	two, seven, cut := fresh(), fresh(), fresh()
-	run([]int{3, 1, 0, 2}, 30, 2, two)
-	run([]int{0, 1, 2, 3}, 30, 7, seven)
-	run([]int{0, 2}, 30, 2, cut)
-	run([]int{1, 3}, 30, 1, cut)
-	for name, other := range map[string]*keep{"2 workers": two, "7 workers": seven, "cut in two": cut} {
-		for i, d := range one.density {
-			if !slices.Equal(d, other.density[i]) {
-				t.Fatalf("%s: record %d differs", name, i)
+	for _, precision := range []Precision{Double, Single} {
+		t.Run(string(precision), func(t *testing.T) {
+			e := smallEnsembleIn(t, precision)
+			run := func(batches []int, count, workers int, into *keep) {
+				if err := e.Run(context.Background(), batches, count, workers, into); err != nil {
+					t.Fatal(err)
+				}
 			}
-		}
-	}
-	for _, v := range one.density[0] {
-		if v != Quantise(v) || float64(float32(v)) != v {
-			t.Fatalf("density %v is not a multiple of the quantum", v)
-		}
+			fresh := func() *keep { return &keep{density: map[int][]float64{}} }
+			one := fresh()
+			run([]int{0, 1, 2, 3, 4}, 37, 1, one)
+			if one.finished != 37 || len(one.density) != 74 {
+				t.Fatalf("%d finished, %d records", one.finished, len(one.density))
+			}
+			two, seven, cut := fresh(), fresh(), fresh()
+			run([]int{3, 1, 0, 4, 2}, 37, 2, two)
+			run([]int{0, 1, 2, 3, 4}, 37, 7, seven)
+			run([]int{0, 2, 4}, 37, 2, cut)
+			run([]int{1, 3}, 37, 1, cut)
+			for name, other := range map[string]*keep{"2 workers": two, "7 workers": seven, "cut in two": cut} {
+				if len(other.density) != len(one.density) {
+					t.Fatalf("%s: %d records", name, len(other.density))
+				}
+				for i, d := range one.density {
+					if !slices.Equal(d, other.density[i]) {
+						t.Fatalf("%s: record %d differs", name, i)
+					}
+				}
+			}
+			for _, v := range one.density[0] {
+				if v != Quantise(v) || float64(float32(v)) != v {
+					t.Fatalf("density %v is not a multiple of the quantum", v)
+				}
+			}
+		})
 	}
 }
 

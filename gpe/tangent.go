@@ -139,10 +139,10 @@ func (t *Tangent) compile(into []operation, l *leg, to int) []operation {
 		out = append(out, operation{kinetic: k})
 	}
 	if t.step == 0 {
-		kinetic(l.first)
+		kinetic(l.kinetics.first)
 	}
 	last := len(p.Scheme.local) - 1
-	t.mean.vScale, t.mean.gScale = 0, 0
+	t.mean.forget()
 	for step := t.step; step < to; step++ {
 		reached := p.Scheme.kinetic[0]
 		for stage, c := range p.Scheme.local {
@@ -154,19 +154,19 @@ func (t *Tangent) compile(into []operation, l *leg, to int) []operation {
 				matrix = make([]float64, 4*p.Grid.N)
 			}
 			at, dt := l.from+(float64(step)+reached)*l.dt, c*l.dt
-			t.mean.tables(at, dt)
+			t.mean.fill(at, dt)
 			t.mean.tangent(matrix, t.field)
-			t.mean.local(t.field, at, dt)
+			t.mean.turn(t.field, at, dt)
 			out = append(out, operation{matrix: matrix})
 			if stage < last {
-				kinetic(l.inner[stage])
+				kinetic(l.kinetics.inner[stage])
 				reached += p.Scheme.kinetic[stage+1]
 			}
 		}
 		if step < l.steps-1 {
-			kinetic(l.joint)
+			kinetic(l.kinetics.joint)
 		} else {
-			kinetic(l.last)
+			kinetic(l.kinetics.last)
 		}
 	}
 	return out

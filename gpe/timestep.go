@@ -41,10 +41,11 @@ func ChooseStep(p *Problem, accuracy float64) (Scheme, float64, error) {
 		prop.NewWalker(false).Leg(b, 0)
 		return b, nil
 	}
+	longest := 0.95 * p.LongestStep()
 	best, step, cost := Scheme{}, 0.0, math.Inf(1)
 	for _, scheme := range []Scheme{Strang(), Quartic()} {
 		for k := range finestTrial {
-			dt := 0.95 * p.Grid.MaxTimeStep() * math.Pow(2, -float64(k)/2)
+			dt := longest * math.Pow(2, -float64(k)/2)
 			work := float64(len(scheme.local)) / dt
 			if work >= cost {
 				break // dearer than what is found already
@@ -65,9 +66,29 @@ func ChooseStep(p *Problem, accuracy float64) (Scheme, float64, error) {
 		}
 	}
 	if step == 0 {
-		return Scheme{}, 0, fmt.Errorf("no time step down to %.2g gives an accuracy of %.2g", 0.95*p.Grid.MaxTimeStep()*math.Pow(2, -(finestTrial-1)/2.0), accuracy)
+		return Scheme{}, 0, fmt.Errorf("no time step down to %.2g gives an accuracy of %.2g", longest*math.Pow(2, -(finestTrial-1)/2.0), accuracy)
 	}
 	return best, step, nil
+}
+
+// LongestStep returns the longest time step at which nothing grows out of the
+// splitting: the grid's limit with the drift and the interaction in it. In a
+// step the shortest waves turn by dt(k²/2 + |v|k + c²); pairs of them that turn
+// by a whole number of turns together, to within 2c²dt, grow out of the noise.
+// With a drift two waves near +k_max are such a pair, for on the grid their sum
+// is a long wave.
+func (p *Problem) LongestStep() float64 {
+	coupling := make([]float64, p.Grid.N)
+	stiff := 0.0
+	for _, t := range []float64{0, p.Times[len(p.Times)-1]} {
+		p.Landscape.Coupling(coupling, t, 1)
+		for j, g := range coupling {
+			n := p.Ground.Field[j] * p.Ground.Field[j]
+			stiff = math.Max(stiff, g*n*p.Law.Slope(n))
+		}
+	}
+	k := p.Grid.MaxWavenumber()
+	return math.Pi / (k*k/2 + math.Abs(p.Landscape.Drift())*k + 2*stiff)
 }
 
 func relativeDistance(a, b *lanes.Batch) float64 {

@@ -114,6 +114,7 @@ type Manifest struct {
 	Times        []float64 `json:"times_hbar_per_mc2"`
 	Workers      int       `json:"workers,omitempty"`
 	Kernel       string    `json:"kernel,omitempty"`
+	Precision    string    `json:"precision,omitempty"` // of the time steps
 	Seconds      float64   `json:"wall_seconds,omitempty"`
 	NormDrift    float64   `json:"atoms_relative_drift"`
 	EnergyDrift  float64   `json:"energy_drift_per_atom_mc2"`

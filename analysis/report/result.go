@@ -21,6 +21,7 @@ type Run struct {
 	Checks                 []lab.Check
 	Warnings               []string
 	Engine                 Engine
+	Rounding               *horizon.Rounding // nil in double precision
 	SpaceTime              SpaceTime
 	Beside                 *horizon.Beside // the exact map, if it was asked for
 }
@@ -28,6 +29,7 @@ type Run struct {
 // Engine is how fast the ensemble ran.
 type Engine struct {
 	Kernel          string
+	Precision       gpe.Precision
 	Workers         int
 	Steps           int           // time steps of a trajectory
 	StepTime        time.Duration // in time steps, summed over workers

@@ -1,12 +1,14 @@
 package report
 
 import (
+	"cmp"
 	"fmt"
 	"io"
 	"math"
 	"strings"
 	"text/tabwriter"
 
+	"tailrace/gpe"
 	"tailrace/gpe/flow"
 )
 
@@ -98,8 +100,12 @@ func (r *Run) Summary(w io.Writer) error {
 	default:
 		fmt.Fprintf(&b, "kept in every trajectory: atoms to %.1g, energy to %.1g of m c₀² an atom\n", math.Abs(r.Conserved.NormDrift), math.Abs(r.Conserved.EnergyDrift))
 		if r.Engine.Trajectories > 0 {
-			fmt.Fprintf(&b, "engine: %.3g ns a point and step, %.3g trajectories a second on %d workers, kernel %s\n",
-				r.Engine.PerPoint(r.Problem.Grid.N), r.Engine.PerSecond(), r.Engine.Workers, r.Engine.Kernel)
+			fmt.Fprintf(&b, "engine: %.3g ns a point and step, %.3g trajectories a second on %d workers, kernel %s, %s precision\n",
+				r.Engine.PerPoint(r.Problem.Grid.N), r.Engine.PerSecond(), r.Engine.Workers, r.Engine.Kernel, cmp.Or(r.Engine.Precision, gpe.Double))
+		}
+		if r.Rounding != nil {
+			c := r.Rounding.Check()
+			fmt.Fprintln(&b, wrap(fmt.Sprintf("%s: %s", c.Name, c.Why), 96, "    "))
 		}
 	}
 	fmt.Fprintf(&b, "noise: %s\n", r.Engine.NoiseModes)

@@ -34,7 +34,7 @@ func TestScripts(t *testing.T) {
 			return nil
 		},
 		Cmds: map[string]func(*testscript.TestScript, bool, []string){
-			"onejson": oneJSON, "numpy": numpy, "appears": appears, "keys": keys, "shorten": shorten,
+			"onejson": oneJSON, "numpy": numpy, "appears": appears, "keys": keys, "shorten": shorten, "singly": singly,
 		},
 	})
 }

@@ -77,6 +77,9 @@ func (o *runOptions) run(ctx context.Context, name string) error {
 	if o.exact == exactOnly {
 		return r.exact(ctx)
 	}
+	if err := r.tryPrecision(ctx); err != nil {
+		return err
+	}
 	if err := r.open(); err != nil {
 		return err
 	}
@@ -92,6 +95,8 @@ type running struct {
 	config    *configs.Config
 	scenario  *configs.Scenario
 	predicted flow.Profile
+	foreseen  *horizon.Account
+	rounding  *horizon.Rounding // nil in double precision
 	cache     gpe.ModeCache
 	cached    bool
 	ensemble  *gpe.Ensemble
@@ -115,7 +120,7 @@ func (r *running) prepare() (err error) {
 	if r.options.exact != exactOnly && r.config.Ensemble.Trajectories < 2 {
 		return r.config.Fault("ensemble.trajectories", "", "at least 2 for a correlation", "and a few thousand to see the band")
 	}
-	if _, err := horizon.Foresee(horizonInput(r.scenario, r.predicted, nil, nil)); err != nil {
+	if r.foreseen, err = horizon.Foresee(horizonInput(r.scenario, r.predicted, nil, nil)); err != nil {
 		return r.config.Fault("record.times", "", "a last time at which there is a band to read", err.Error())
 	}
 	if !r.options.noCache {
@@ -147,7 +152,7 @@ func (r *running) open() (err error) {
 	p := r.scenario.Problem
 	r.store = moments.NewStore(r.config.Ensemble.Trajectories, p.Grid.N, len(p.Times), func(n int) { r.bar.update(n) })
 	r.manifest = folder.Manifest{Version: version, Source: r.config.Source, Config: string(r.config.Text), Seed: p.Seed,
-		Trajectories: r.store.Count, Points: p.Grid.N, Steps: r.ensemble.Steps(), Times: p.Times, Workers: r.options.workers, Kernel: lanes.Kernel()}
+		Trajectories: r.store.Count, Points: p.Grid.N, Steps: r.ensemble.Steps(), Times: p.Times, Workers: r.options.workers, Kernel: lanes.Kernel(), Precision: string(p.Precision)}
 	if r.options.resume {
 		if r.folder, err = folder.Resume(path); err != nil {
 			return err
@@ -178,7 +183,7 @@ func (r *running) carry(ctx context.Context) error {
 		}
 		return err
 	}
-	r.engine = report.Engine{Kernel: lanes.Kernel(), Workers: r.options.workers, Steps: r.ensemble.Steps(), StepTime: store.StepTime() - earlier,
+	r.engine = report.Engine{Kernel: lanes.Kernel(), Precision: p.Precision, Workers: r.options.workers, Steps: r.ensemble.Steps(), StepTime: store.StepTime() - earlier,
 		Wall: time.Since(start), Trajectories: store.Count - begun, NoiseModes: p.Noise.Describe(), ModesFromCache: r.cached}
 	r.manifest.Finished, r.manifest.Seconds = store.Finished(), time.Since(start).Seconds()
 	r.manifest.NormDrift, r.manifest.EnergyDrift = store.Conserved().NormDrift, store.Conserved().EnergyDrift
@@ -216,6 +221,9 @@ func (r *running) conclude(ctx context.Context) error {
 	case probe != nil:
 		checks = append(checks, probe.Check())
 	}
+	if r.rounding != nil {
+		checks = append(checks, r.rounding.Check())
+	}
 	var beside *horizon.Beside
 	if r.options.exact == exactBeside {
 		if beside, err = r.beside(ctx, account); errors.Is(err, context.Canceled) {
@@ -232,7 +240,7 @@ func (r *running) deliver(account *horizon.Account, checks []lab.Check, beside *
 	f, p := r.folder, r.scenario.Problem
 	out := &report.Run{Title: r.config.Title, Config: r.config.Source, Version: version,
 		Units:   report.Units{Lab: r.scenario.InLab, Scale: r.scenario.Scale, PerXi: p.AtomsPerLength},
-		Account: account, Problem: p, Engine: r.engine, Checks: checks, Warnings: account.Warnings, Beside: beside}
+		Account: account, Problem: p, Engine: r.engine, Checks: checks, Warnings: account.Warnings, Beside: beside, Rounding: r.rounding}
 	if out.SpaceTime, err = spaceTime(r.scenario); err != nil {
 		return err
 	}

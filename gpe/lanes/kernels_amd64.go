@@ -11,10 +11,22 @@ func forward2AVX512(re *float64, im *float64, twiddle *float64, blocks int, span
 func backward2AVX512(re *float64, im *float64, twiddle *float64, blocks int, span int)
 
 //go:noescape
+func forward3AVX512(re *float64, im *float64, twiddle *float64, blocks int, span int)
+
+//go:noescape
+func backward3AVX512(re *float64, im *float64, twiddle *float64, blocks int, span int)
+
+//go:noescape
 func forward4AVX512(re *float64, im *float64, twiddle *float64, blocks int, span int)
 
 //go:noescape
 func backward4AVX512(re *float64, im *float64, twiddle *float64, blocks int, span int)
+
+//go:noescape
+func forward5AVX512(re *float64, im *float64, twiddle *float64, blocks int, span int)
+
+//go:noescape
+func backward5AVX512(re *float64, im *float64, twiddle *float64, blocks int, span int)
 
 //go:noescape
 func forward8AVX512(re *float64, im *float64, twiddle *float64, blocks int, span int)
@@ -39,6 +51,9 @@ func phaseSwollenAVX512(re *float64, im *float64, potential *float64, coupling *
 func dampAVX512(re *float64, im *float64, d *float64, points int)
 
 //go:noescape
+func mixAVX512(re *float64, im *float64, matrix *float64, points int)
+
+//go:noescape
 func combineAVX512(dst *float64, f *float64, beta *float64, groups int, count int)
 
 //go:noescape
@@ -51,10 +66,22 @@ func forward2AVX2(re *float64, im *float64, twiddle *float64, blocks int, span i
 func backward2AVX2(re *float64, im *float64, twiddle *float64, blocks int, span int)
 
 //go:noescape
+func forward3AVX2(re *float64, im *float64, twiddle *float64, blocks int, span int)
+
+//go:noescape
+func backward3AVX2(re *float64, im *float64, twiddle *float64, blocks int, span int)
+
+//go:noescape
 func forward4AVX2(re *float64, im *float64, twiddle *float64, blocks int, span int)
 
 //go:noescape
 func backward4AVX2(re *float64, im *float64, twiddle *float64, blocks int, span int)
+
+//go:noescape
+func forward5AVX2(re *float64, im *float64, twiddle *float64, blocks int, span int)
+
+//go:noescape
+func backward5AVX2(re *float64, im *float64, twiddle *float64, blocks int, span int)
 
 func middle4AVX2(re *float64, im *float64, kinRe *float64, kinIm *float64, groups int)
 
@@ -71,7 +98,94 @@ func phaseSwollenAVX2(re *float64, im *float64, potential *float64, coupling *fl
 func dampAVX2(re *float64, im *float64, d *float64, points int)
 
 //go:noescape
+func mixAVX2(re *float64, im *float64, matrix *float64, points int)
+
+//go:noescape
 func combineAVX2(dst *float64, f *float64, beta *float64, groups int, count int)
 
 //go:noescape
 func tileAVX2(dst *float64, a *float64, b *float64, rows int, next int)
+
+//go:noescape
+func forward2SingleAVX512(re *float32, im *float32, twiddle *float32, blocks int, span int)
+
+//go:noescape
+func backward2SingleAVX512(re *float32, im *float32, twiddle *float32, blocks int, span int)
+
+//go:noescape
+func forward3SingleAVX512(re *float32, im *float32, twiddle *float32, blocks int, span int)
+
+//go:noescape
+func backward3SingleAVX512(re *float32, im *float32, twiddle *float32, blocks int, span int)
+
+//go:noescape
+func forward4SingleAVX512(re *float32, im *float32, twiddle *float32, blocks int, span int)
+
+//go:noescape
+func backward4SingleAVX512(re *float32, im *float32, twiddle *float32, blocks int, span int)
+
+//go:noescape
+func forward5SingleAVX512(re *float32, im *float32, twiddle *float32, blocks int, span int)
+
+//go:noescape
+func backward5SingleAVX512(re *float32, im *float32, twiddle *float32, blocks int, span int)
+
+//go:noescape
+func forward8SingleAVX512(re *float32, im *float32, twiddle *float32, blocks int, span int)
+
+//go:noescape
+func backward8SingleAVX512(re *float32, im *float32, twiddle *float32, blocks int, span int)
+
+func middle4SingleAVX512(re *float32, im *float32, kinRe *float32, kinIm *float32, groups int)
+
+func middle8SingleAVX512(re *float32, im *float32, kinRe *float32, kinIm *float32, groups int)
+
+//go:noescape
+func phaseCubicSingleAVX512(re *float32, im *float32, potential *float32, coupling *float32, points int)
+
+//go:noescape
+func phaseShiftedSingleAVX512(re *float32, im *float32, potential *float32, coupling *float32, density *float32, points int)
+
+//go:noescape
+func phaseSwollenSingleAVX512(re *float32, im *float32, potential *float32, coupling *float32, density *float32, swelling float32, scale float32, points int)
+
+//go:noescape
+func dampSingleAVX512(re *float32, im *float32, d *float32, points int)
+
+//go:noescape
+func forward2SingleAVX2(re *float32, im *float32, twiddle *float32, blocks int, span int)
+
+//go:noescape
+func backward2SingleAVX2(re *float32, im *float32, twiddle *float32, blocks int, span int)
+
+//go:noescape
+func forward3SingleAVX2(re *float32, im *float32, twiddle *float32, blocks int, span int)
+
+//go:noescape
+func backward3SingleAVX2(re *float32, im *float32, twiddle *float32, blocks int, span int)
+
+//go:noescape
+func forward4SingleAVX2(re *float32, im *float32, twiddle *float32, blocks int, span int)
+
+//go:noescape
+func backward4SingleAVX2(re *float32, im *float32, twiddle *float32, blocks int, span int)
+
+//go:noescape
+func forward5SingleAVX2(re *float32, im *float32, twiddle *float32, blocks int, span int)
+
+//go:noescape
+func backward5SingleAVX2(re *float32, im *float32, twiddle *float32, blocks int, span int)
+
+func middle4SingleAVX2(re *float32, im *float32, kinRe *float32, kinIm *float32, groups int)
+
+//go:noescape
+func phaseCubicSingleAVX2(re *float32, im *float32, potential *float32, coupling *float32, points int)
+
+//go:noescape
+func phaseShiftedSingleAVX2(re *float32, im *float32, potential *float32, coupling *float32, density *float32, points int)
+
+//go:noescape
+func phaseSwollenSingleAVX2(re *float32, im *float32, potential *float32, coupling *float32, density *float32, swelling float32, scale float32, points int)
+
+//go:noescape
+func dampSingleAVX2(re *float32, im *float32, d *float32, points int)

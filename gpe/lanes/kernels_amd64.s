@@ -94,6 +94,142 @@ backward2AVX512next:
 	VZEROUPPER
 	RET
 
+// func forward3AVX512(re *float64, im *float64, twiddle *float64, blocks int, span int)
+// Requires: AVX, AVX512F
+TEXT ·forward3AVX512(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+forward3AVX512block:
+	MOVQ DX, R8
+	MOVQ SI, R9
+
+forward3AVX512next:
+	VMOVUPD           (AX), Z0
+	VMOVUPD           (CX), Z1
+	VMOVUPD           (AX)(DI*1), Z2
+	VMOVUPD           (CX)(DI*1), Z3
+	VMOVUPD           (AX)(DI*2), Z4
+	VMOVUPD           (CX)(DI*2), Z5
+	VSUBPD            Z4, Z2, Z6
+	VSUBPD            Z5, Z3, Z7
+	VADDPD            Z4, Z2, Z2
+	VADDPD            Z5, Z3, Z3
+	VADDPD            Z2, Z0, Z4
+	VADDPD            Z3, Z1, Z5
+	VFMADD231PD.BCST  number0<>+0(SB), Z2, Z0
+	VFMADD231PD.BCST  number0<>+0(SB), Z3, Z1
+	VMULPD.BCST       number1<>+0(SB), Z6, Z2
+	VMULPD.BCST       number1<>+0(SB), Z7, Z3
+	VADDPD            Z3, Z0, Z6
+	VSUBPD            Z2, Z1, Z7
+	VSUBPD            Z3, Z0, Z0
+	VADDPD            Z2, Z1, Z1
+	VMOVUPD           Z4, (AX)
+	VMOVUPD           Z5, (CX)
+	VMULPD.BCST       (R8), Z6, Z2
+	VMULPD.BCST       8(R8), Z6, Z3
+	VFNMADD231PD.BCST 8(R8), Z7, Z2
+	VFMADD231PD.BCST  (R8), Z7, Z3
+	VMOVUPD           Z2, (AX)(DI*1)
+	VMOVUPD           Z3, (CX)(DI*1)
+	VMULPD.BCST       16(R8), Z0, Z2
+	VMULPD.BCST       24(R8), Z0, Z0
+	VFNMADD231PD.BCST 24(R8), Z1, Z2
+	VFMADD231PD.BCST  16(R8), Z1, Z0
+	VMOVUPD           Z2, (AX)(DI*2)
+	VMOVUPD           Z0, (CX)(DI*2)
+	ADDQ              $0x40, AX
+	ADDQ              $0x40, CX
+	ADDQ              $0x00000020, R8
+	DECQ              R9
+	JNZ               forward3AVX512next
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	DECQ              BX
+	JNZ               forward3AVX512block
+	VZEROUPPER
+	RET
+
+DATA number0<>+0(SB)/8, $(-0.5)
+GLOBL number0<>(SB), RODATA|NOPTR, $8
+
+DATA number1<>+0(SB)/8, $(0.8660254037844386)
+GLOBL number1<>(SB), RODATA|NOPTR, $8
+
+// func backward3AVX512(re *float64, im *float64, twiddle *float64, blocks int, span int)
+// Requires: AVX, AVX512F
+TEXT ·backward3AVX512(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+backward3AVX512block:
+	MOVQ DX, R8
+	MOVQ SI, R9
+
+backward3AVX512next:
+	VMOVUPD           (AX), Z0
+	VMOVUPD           (CX), Z1
+	VMOVUPD           (AX)(DI*1), Z2
+	VMOVUPD           (CX)(DI*1), Z3
+	VMULPD.BCST       (R8), Z2, Z4
+	VMULPD.BCST       (R8), Z3, Z5
+	VFMADD231PD.BCST  8(R8), Z3, Z4
+	VFNMADD231PD.BCST 8(R8), Z2, Z5
+	VMOVUPD           (AX)(DI*2), Z2
+	VMOVUPD           (CX)(DI*2), Z3
+	VMULPD.BCST       16(R8), Z2, Z6
+	VMULPD.BCST       16(R8), Z3, Z7
+	VFMADD231PD.BCST  24(R8), Z3, Z6
+	VFNMADD231PD.BCST 24(R8), Z2, Z7
+	VSUBPD            Z7, Z5, Z2
+	VSUBPD            Z6, Z4, Z3
+	VADDPD            Z7, Z5, Z5
+	VADDPD            Z6, Z4, Z4
+	VADDPD            Z5, Z1, Z6
+	VADDPD            Z4, Z0, Z7
+	VFMADD231PD.BCST  number0<>+0(SB), Z5, Z1
+	VFMADD231PD.BCST  number0<>+0(SB), Z4, Z0
+	VMULPD.BCST       number1<>+0(SB), Z2, Z2
+	VMULPD.BCST       number1<>+0(SB), Z3, Z3
+	VADDPD            Z3, Z1, Z4
+	VSUBPD            Z2, Z0, Z5
+	VSUBPD            Z3, Z1, Z1
+	VADDPD            Z2, Z0, Z0
+	VMOVUPD           Z7, (AX)
+	VMOVUPD           Z6, (CX)
+	VMOVUPD           Z5, (AX)(DI*1)
+	VMOVUPD           Z4, (CX)(DI*1)
+	VMOVUPD           Z0, (AX)(DI*2)
+	VMOVUPD           Z1, (CX)(DI*2)
+	ADDQ              $0x40, AX
+	ADDQ              $0x40, CX
+	ADDQ              $0x00000020, R8
+	DECQ              R9
+	JNZ               backward3AVX512next
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	DECQ              BX
+	JNZ               backward3AVX512block
+	VZEROUPPER
+	RET
+
 // func forward4AVX512(re *float64, im *float64, twiddle *float64, blocks int, span int)
 // Requires: AVX, AVX512F
 TEXT ·forward4AVX512(SB), NOSPLIT, $0-40
@@ -248,6 +384,243 @@ backward4AVX512next:
 	VZEROUPPER
 	RET
 
+// func forward5AVX512(re *float64, im *float64, twiddle *float64, blocks int, span int)
+// Requires: AVX, AVX512F
+TEXT ·forward5AVX512(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+forward5AVX512block:
+	MOVQ DX, R11
+	MOVQ SI, R12
+
+forward5AVX512next:
+	LEAQ              (AX)(DI*4), R9
+	LEAQ              (CX)(DI*4), R10
+	VMOVUPD           (AX), Z0
+	VMOVUPD           (CX), Z1
+	VMOVUPD           (AX)(DI*1), Z2
+	VMOVUPD           (CX)(DI*1), Z3
+	VMOVUPD           (AX)(DI*2), Z4
+	VMOVUPD           (CX)(DI*2), Z5
+	VMOVUPD           (AX)(R8*1), Z6
+	VMOVUPD           (CX)(R8*1), Z7
+	VMOVUPD           (R9), Z8
+	VMOVUPD           (R10), Z9
+	VSUBPD            Z8, Z2, Z10
+	VSUBPD            Z9, Z3, Z11
+	VADDPD            Z8, Z2, Z2
+	VADDPD            Z9, Z3, Z3
+	VSUBPD            Z6, Z4, Z8
+	VSUBPD            Z7, Z5, Z9
+	VADDPD            Z6, Z4, Z4
+	VADDPD            Z7, Z5, Z5
+	VADDPD            Z2, Z0, Z6
+	VADDPD            Z3, Z1, Z7
+	VADDPD            Z4, Z6, Z6
+	VADDPD            Z5, Z7, Z7
+	VMOVAPD           Z0, Z12
+	VMOVAPD           Z1, Z13
+	VFMADD231PD.BCST  number2<>+0(SB), Z2, Z12
+	VFMADD231PD.BCST  number2<>+0(SB), Z3, Z13
+	VFMADD231PD.BCST  number3<>+0(SB), Z4, Z12
+	VFMADD231PD.BCST  number3<>+0(SB), Z5, Z13
+	VFMADD231PD.BCST  number3<>+0(SB), Z2, Z0
+	VFMADD231PD.BCST  number3<>+0(SB), Z3, Z1
+	VFMADD231PD.BCST  number2<>+0(SB), Z4, Z0
+	VFMADD231PD.BCST  number2<>+0(SB), Z5, Z1
+	VMULPD.BCST       number4<>+0(SB), Z10, Z2
+	VMULPD.BCST       number4<>+0(SB), Z11, Z3
+	VFMADD231PD.BCST  number5<>+0(SB), Z8, Z2
+	VFMADD231PD.BCST  number5<>+0(SB), Z9, Z3
+	VMULPD.BCST       number5<>+0(SB), Z10, Z4
+	VMULPD.BCST       number5<>+0(SB), Z11, Z5
+	VFMADD231PD.BCST  number6<>+0(SB), Z8, Z4
+	VFMADD231PD.BCST  number6<>+0(SB), Z9, Z5
+	VADDPD            Z3, Z12, Z8
+	VSUBPD            Z2, Z13, Z9
+	VADDPD            Z5, Z0, Z10
+	VSUBPD            Z4, Z1, Z11
+	VSUBPD            Z5, Z0, Z0
+	VADDPD            Z4, Z1, Z1
+	VSUBPD            Z3, Z12, Z3
+	VADDPD            Z2, Z13, Z2
+	VMOVUPD           Z6, (AX)
+	VMOVUPD           Z7, (CX)
+	VMULPD.BCST       (R11), Z8, Z4
+	VMULPD.BCST       8(R11), Z8, Z5
+	VFNMADD231PD.BCST 8(R11), Z9, Z4
+	VFMADD231PD.BCST  (R11), Z9, Z5
+	VMOVUPD           Z4, (AX)(DI*1)
+	VMOVUPD           Z5, (CX)(DI*1)
+	VMULPD.BCST       16(R11), Z10, Z4
+	VMULPD.BCST       24(R11), Z10, Z5
+	VFNMADD231PD.BCST 24(R11), Z11, Z4
+	VFMADD231PD.BCST  16(R11), Z11, Z5
+	VMOVUPD           Z4, (AX)(DI*2)
+	VMOVUPD           Z5, (CX)(DI*2)
+	VMULPD.BCST       32(R11), Z0, Z4
+	VMULPD.BCST       40(R11), Z0, Z0
+	VFNMADD231PD.BCST 40(R11), Z1, Z4
+	VFMADD231PD.BCST  32(R11), Z1, Z0
+	VMOVUPD           Z4, (AX)(R8*1)
+	VMOVUPD           Z0, (CX)(R8*1)
+	VMULPD.BCST       48(R11), Z3, Z0
+	VMULPD.BCST       56(R11), Z3, Z1
+	VFNMADD231PD.BCST 56(R11), Z2, Z0
+	VFMADD231PD.BCST  48(R11), Z2, Z1
+	VMOVUPD           Z0, (R9)
+	VMOVUPD           Z1, (R10)
+	ADDQ              $0x40, AX
+	ADDQ              $0x40, CX
+	ADDQ              $0x00000040, R11
+	DECQ              R12
+	JNZ               forward5AVX512next
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	DECQ              BX
+	JNZ               forward5AVX512block
+	VZEROUPPER
+	RET
+
+DATA number2<>+0(SB)/8, $(0.30901699437494745)
+GLOBL number2<>(SB), RODATA|NOPTR, $8
+
+DATA number3<>+0(SB)/8, $(-0.8090169943749475)
+GLOBL number3<>(SB), RODATA|NOPTR, $8
+
+DATA number4<>+0(SB)/8, $(0.9510565162951535)
+GLOBL number4<>(SB), RODATA|NOPTR, $8
+
+DATA number5<>+0(SB)/8, $(0.5877852522924731)
+GLOBL number5<>(SB), RODATA|NOPTR, $8
+
+DATA number6<>+0(SB)/8, $(-0.9510565162951535)
+GLOBL number6<>(SB), RODATA|NOPTR, $8
+
+// func backward5AVX512(re *float64, im *float64, twiddle *float64, blocks int, span int)
+// Requires: AVX, AVX512F
+TEXT ·backward5AVX512(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+backward5AVX512block:
+	MOVQ DX, R11
+	MOVQ SI, R12
+
+backward5AVX512next:
+	LEAQ              (AX)(DI*4), R9
+	LEAQ              (CX)(DI*4), R10
+	VMOVUPD           (AX), Z0
+	VMOVUPD           (CX), Z1
+	VMOVUPD           (AX)(DI*1), Z2
+	VMOVUPD           (CX)(DI*1), Z3
+	VMULPD.BCST       (R11), Z2, Z4
+	VMULPD.BCST       (R11), Z3, Z5
+	VFMADD231PD.BCST  8(R11), Z3, Z4
+	VFNMADD231PD.BCST 8(R11), Z2, Z5
+	VMOVUPD           (AX)(DI*2), Z2
+	VMOVUPD           (CX)(DI*2), Z3
+	VMULPD.BCST       16(R11), Z2, Z6
+	VMULPD.BCST       16(R11), Z3, Z7
+	VFMADD231PD.BCST  24(R11), Z3, Z6
+	VFNMADD231PD.BCST 24(R11), Z2, Z7
+	VMOVUPD           (AX)(R8*1), Z2
+	VMOVUPD           (CX)(R8*1), Z3
+	VMULPD.BCST       32(R11), Z2, Z8
+	VMULPD.BCST       32(R11), Z3, Z9
+	VFMADD231PD.BCST  40(R11), Z3, Z8
+	VFNMADD231PD.BCST 40(R11), Z2, Z9
+	VMOVUPD           (R9), Z2
+	VMOVUPD           (R10), Z3
+	VMULPD.BCST       48(R11), Z2, Z10
+	VMULPD.BCST       48(R11), Z3, Z11
+	VFMADD231PD.BCST  56(R11), Z3, Z10
+	VFNMADD231PD.BCST 56(R11), Z2, Z11
+	VSUBPD            Z11, Z5, Z2
+	VSUBPD            Z10, Z4, Z3
+	VADDPD            Z11, Z5, Z5
+	VADDPD            Z10, Z4, Z4
+	VSUBPD            Z9, Z7, Z10
+	VSUBPD            Z8, Z6, Z11
+	VADDPD            Z9, Z7, Z7
+	VADDPD            Z8, Z6, Z6
+	VADDPD            Z5, Z1, Z8
+	VADDPD            Z4, Z0, Z9
+	VADDPD            Z7, Z8, Z8
+	VADDPD            Z6, Z9, Z9
+	VMOVAPD           Z1, Z12
+	VMOVAPD           Z0, Z13
+	VFMADD231PD.BCST  number2<>+0(SB), Z5, Z12
+	VFMADD231PD.BCST  number2<>+0(SB), Z4, Z13
+	VFMADD231PD.BCST  number3<>+0(SB), Z7, Z12
+	VFMADD231PD.BCST  number3<>+0(SB), Z6, Z13
+	VFMADD231PD.BCST  number3<>+0(SB), Z5, Z1
+	VFMADD231PD.BCST  number3<>+0(SB), Z4, Z0
+	VFMADD231PD.BCST  number2<>+0(SB), Z7, Z1
+	VFMADD231PD.BCST  number2<>+0(SB), Z6, Z0
+	VMULPD.BCST       number4<>+0(SB), Z2, Z4
+	VMULPD.BCST       number4<>+0(SB), Z3, Z5
+	VFMADD231PD.BCST  number5<>+0(SB), Z10, Z4
+	VFMADD231PD.BCST  number5<>+0(SB), Z11, Z5
+	VMULPD.BCST       number5<>+0(SB), Z2, Z2
+	VMULPD.BCST       number5<>+0(SB), Z3, Z3
+	VFMADD231PD.BCST  number6<>+0(SB), Z10, Z2
+	VFMADD231PD.BCST  number6<>+0(SB), Z11, Z3
+	VADDPD            Z5, Z12, Z6
+	VSUBPD            Z4, Z13, Z7
+	VADDPD            Z3, Z1, Z10
+	VSUBPD            Z2, Z0, Z11
+	VSUBPD            Z3, Z1, Z1
+	VADDPD            Z2, Z0, Z0
+	VSUBPD            Z5, Z12, Z2
+	VADDPD            Z4, Z13, Z3
+	VMOVUPD           Z9, (AX)
+	VMOVUPD           Z8, (CX)
+	VMOVUPD           Z7, (AX)(DI*1)
+	VMOVUPD           Z6, (CX)(DI*1)
+	VMOVUPD           Z11, (AX)(DI*2)
+	VMOVUPD           Z10, (CX)(DI*2)
+	VMOVUPD           Z0, (AX)(R8*1)
+	VMOVUPD           Z1, (CX)(R8*1)
+	VMOVUPD           Z3, (R9)
+	VMOVUPD           Z2, (R10)
+	ADDQ              $0x40, AX
+	ADDQ              $0x40, CX
+	ADDQ              $0x00000040, R11
+	DECQ              R12
+	JNZ               backward5AVX512next
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	DECQ              BX
+	JNZ               backward5AVX512block
+	VZEROUPPER
+	RET
+
 // func forward8AVX512(re *float64, im *float64, twiddle *float64, blocks int, span int)
 // Requires: AVX, AVX512F
 TEXT ·forward8AVX512(SB), NOSPLIT, $0-40
@@ -259,7 +632,7 @@ TEXT ·forward8AVX512(SB), NOSPLIT, $0-40
 	MOVQ         SI, DI
 	SHLQ         $0x06, DI
 	LEAQ         (DI)(DI*2), R8
-	VBROADCASTSD sqrtHalf<>+0(SB), Z0
+	VBROADCASTSD number7<>+0(SB), Z0
 
 forward8AVX512block:
 	MOVQ DX, R11
@@ -408,8 +781,8 @@ forward8AVX512next:
 	VZEROUPPER
 	RET
 
-DATA sqrtHalf<>+0(SB)/8, $(0.7071067811865476)
-GLOBL sqrtHalf<>(SB), RODATA|NOPTR, $8
+DATA number7<>+0(SB)/8, $(0.7071067811865476)
+GLOBL number7<>(SB), RODATA|NOPTR, $8
 
 // func backward8AVX512(re *float64, im *float64, twiddle *float64, blocks int, span int)
 // Requires: AVX, AVX512F
@@ -422,7 +795,7 @@ TEXT ·backward8AVX512(SB), NOSPLIT, $0-40
 	MOVQ         SI, DI
 	SHLQ         $0x06, DI
 	LEAQ         (DI)(DI*2), R8
-	VBROADCASTSD sqrtHalf<>+0(SB), Z0
+	VBROADCASTSD number7<>+0(SB), Z0
 
 backward8AVX512block:
 	MOVQ DX, R11
@@ -662,7 +1035,7 @@ TEXT ·middle8AVX512(SB), NOSPLIT, $0-40
 	MOVQ         kinRe+16(FP), DX
 	MOVQ         kinIm+24(FP), BX
 	MOVQ         groups+32(FP), SI
-	VBROADCASTSD sqrtHalf<>+0(SB), Z0
+	VBROADCASTSD number7<>+0(SB), Z0
 
 middle8AVX512next:
 	VMOVUPD           (AX), Z1
@@ -858,7 +1231,7 @@ TEXT ·phaseCubicAVX512(SB), NOSPLIT, $0-40
 	MOVQ         potential+16(FP), DX
 	MOVQ         coupling+24(FP), BX
 	MOVQ         points+32(FP), SI
-	VBROADCASTSD number0<>+0(SB), Z0
+	VBROADCASTSD number8<>+0(SB), Z0
 
 phaseCubicAVX512next:
 	VMOVUPD          (AX), Z1
@@ -873,16 +1246,8 @@ phaseCubicAVX512next:
 	VSUBPD           Z4, Z5, Z4
 	VPSLLQ           $0x3f, Z3, Z3
 	VMULPD           Z4, Z4, Z5
-	VBROADCASTSD     number1<>+0(SB), Z6
-	VBROADCASTSD     number2<>+0(SB), Z7
-	VFMADD213PD.BCST number3<>+0(SB), Z5, Z6
-	VFMADD213PD.BCST number4<>+0(SB), Z5, Z7
-	VFMADD213PD.BCST number5<>+0(SB), Z5, Z6
-	VFMADD213PD.BCST number6<>+0(SB), Z5, Z7
-	VFMADD213PD.BCST number7<>+0(SB), Z5, Z6
-	VFMADD213PD.BCST number8<>+0(SB), Z5, Z7
-	VFMADD213PD.BCST number9<>+0(SB), Z5, Z6
-	VFMADD213PD.BCST number10<>+0(SB), Z5, Z7
+	VBROADCASTSD     number9<>+0(SB), Z6
+	VBROADCASTSD     number10<>+0(SB), Z7
 	VFMADD213PD.BCST number11<>+0(SB), Z5, Z6
 	VFMADD213PD.BCST number12<>+0(SB), Z5, Z7
 	VFMADD213PD.BCST number13<>+0(SB), Z5, Z6
@@ -891,6 +1256,14 @@ phaseCubicAVX512next:
 	VFMADD213PD.BCST number16<>+0(SB), Z5, Z7
 	VFMADD213PD.BCST number17<>+0(SB), Z5, Z6
 	VFMADD213PD.BCST number18<>+0(SB), Z5, Z7
+	VFMADD213PD.BCST number19<>+0(SB), Z5, Z6
+	VFMADD213PD.BCST number20<>+0(SB), Z5, Z7
+	VFMADD213PD.BCST number21<>+0(SB), Z5, Z6
+	VFMADD213PD.BCST number22<>+0(SB), Z5, Z7
+	VFMADD213PD.BCST number23<>+0(SB), Z5, Z6
+	VFMADD213PD.BCST number24<>+0(SB), Z5, Z7
+	VFMADD213PD.BCST number25<>+0(SB), Z5, Z6
+	VFMADD213PD.BCST number26<>+0(SB), Z5, Z7
 	VMULPD           Z4, Z6, Z4
 	VPXORQ           Z3, Z4, Z4
 	VPXORQ           Z3, Z7, Z7
@@ -909,62 +1282,62 @@ phaseCubicAVX512next:
 	VZEROUPPER
 	RET
 
-DATA number0<>+0(SB)/8, $(6755399441055744.0)
-GLOBL number0<>(SB), RODATA|NOPTR, $8
-
-DATA number1<>+0(SB)/8, $(0.0000007408584124510002)
-GLOBL number1<>(SB), RODATA|NOPTR, $8
-
-DATA number2<>+0(SB)/8, $(0.000004147269028728277)
-GLOBL number2<>(SB), RODATA|NOPTR, $8
-
-DATA number3<>+0(SB)/8, $(-0.000021872378330766814)
-GLOBL number3<>(SB), RODATA|NOPTR, $8
-
-DATA number4<>+0(SB)/8, $(-0.00010456453928528452)
-GLOBL number4<>(SB), RODATA|NOPTR, $8
-
-DATA number5<>+0(SB)/8, $(0.00046628604345404966)
-GLOBL number5<>(SB), RODATA|NOPTR, $8
-
-DATA number6<>+0(SB)/8, $(0.0019295555721679475)
-GLOBL number6<>(SB), RODATA|NOPTR, $8
-
-DATA number7<>+0(SB)/8, $(-0.0073704272753377644)
-GLOBL number7<>(SB), RODATA|NOPTR, $8
-
-DATA number8<>+0(SB)/8, $(-0.02580688861695975)
+DATA number8<>+0(SB)/8, $(6755399441055744.0)
 GLOBL number8<>(SB), RODATA|NOPTR, $8
 
-DATA number9<>+0(SB)/8, $(0.08214588614216695)
+DATA number9<>+0(SB)/8, $(0.0000007408584124510002)
 GLOBL number9<>(SB), RODATA|NOPTR, $8
 
-DATA number10<>+0(SB)/8, $(0.2353306301195154)
+DATA number10<>+0(SB)/8, $(0.000004147269028728277)
 GLOBL number10<>(SB), RODATA|NOPTR, $8
 
-DATA number11<>+0(SB)/8, $(-0.5992645292863936)
+DATA number11<>+0(SB)/8, $(-0.000021872378330766814)
 GLOBL number11<>(SB), RODATA|NOPTR, $8
 
-DATA number12<>+0(SB)/8, $(-1.3352627688431513)
+DATA number12<>+0(SB)/8, $(-0.00010456453928528452)
 GLOBL number12<>(SB), RODATA|NOPTR, $8
 
-DATA number13<>+0(SB)/8, $(2.550164039875999)
+DATA number13<>+0(SB)/8, $(0.00046628604345404966)
 GLOBL number13<>(SB), RODATA|NOPTR, $8
 
-DATA number14<>+0(SB)/8, $(4.058712126416504)
+DATA number14<>+0(SB)/8, $(0.0019295555721679475)
 GLOBL number14<>(SB), RODATA|NOPTR, $8
 
-DATA number15<>+0(SB)/8, $(-5.167712780049946)
+DATA number15<>+0(SB)/8, $(-0.0073704272753377644)
 GLOBL number15<>(SB), RODATA|NOPTR, $8
 
-DATA number16<>+0(SB)/8, $(-4.934802200544677)
+DATA number16<>+0(SB)/8, $(-0.02580688861695975)
 GLOBL number16<>(SB), RODATA|NOPTR, $8
 
-DATA number17<>+0(SB)/8, $(3.141592653589793)
+DATA number17<>+0(SB)/8, $(0.08214588614216695)
 GLOBL number17<>(SB), RODATA|NOPTR, $8
 
-DATA number18<>+0(SB)/8, $(1.0)
+DATA number18<>+0(SB)/8, $(0.2353306301195154)
 GLOBL number18<>(SB), RODATA|NOPTR, $8
+
+DATA number19<>+0(SB)/8, $(-0.5992645292863936)
+GLOBL number19<>(SB), RODATA|NOPTR, $8
+
+DATA number20<>+0(SB)/8, $(-1.3352627688431513)
+GLOBL number20<>(SB), RODATA|NOPTR, $8
+
+DATA number21<>+0(SB)/8, $(2.550164039875999)
+GLOBL number21<>(SB), RODATA|NOPTR, $8
+
+DATA number22<>+0(SB)/8, $(4.058712126416504)
+GLOBL number22<>(SB), RODATA|NOPTR, $8
+
+DATA number23<>+0(SB)/8, $(-5.167712780049946)
+GLOBL number23<>(SB), RODATA|NOPTR, $8
+
+DATA number24<>+0(SB)/8, $(-4.934802200544677)
+GLOBL number24<>(SB), RODATA|NOPTR, $8
+
+DATA number25<>+0(SB)/8, $(3.141592653589793)
+GLOBL number25<>(SB), RODATA|NOPTR, $8
+
+DATA number26<>+0(SB)/8, $(1.0)
+GLOBL number26<>(SB), RODATA|NOPTR, $8
 
 // func phaseShiftedAVX512(re *float64, im *float64, potential *float64, coupling *float64, density *float64, points int)
 // Requires: AVX, AVX512F
@@ -975,7 +1348,7 @@ TEXT ·phaseShiftedAVX512(SB), NOSPLIT, $0-48
 	MOVQ         coupling+24(FP), BX
 	MOVQ         density+32(FP), SI
 	MOVQ         points+40(FP), DI
-	VBROADCASTSD number0<>+0(SB), Z0
+	VBROADCASTSD number8<>+0(SB), Z0
 
 phaseShiftedAVX512next:
 	VMOVUPD          (AX), Z1
@@ -992,16 +1365,8 @@ phaseShiftedAVX512next:
 	VSUBPD           Z4, Z5, Z4
 	VPSLLQ           $0x3f, Z3, Z3
 	VMULPD           Z4, Z4, Z5
-	VBROADCASTSD     number1<>+0(SB), Z6
-	VBROADCASTSD     number2<>+0(SB), Z7
-	VFMADD213PD.BCST number3<>+0(SB), Z5, Z6
-	VFMADD213PD.BCST number4<>+0(SB), Z5, Z7
-	VFMADD213PD.BCST number5<>+0(SB), Z5, Z6
-	VFMADD213PD.BCST number6<>+0(SB), Z5, Z7
-	VFMADD213PD.BCST number7<>+0(SB), Z5, Z6
-	VFMADD213PD.BCST number8<>+0(SB), Z5, Z7
-	VFMADD213PD.BCST number9<>+0(SB), Z5, Z6
-	VFMADD213PD.BCST number10<>+0(SB), Z5, Z7
+	VBROADCASTSD     number9<>+0(SB), Z6
+	VBROADCASTSD     number10<>+0(SB), Z7
 	VFMADD213PD.BCST number11<>+0(SB), Z5, Z6
 	VFMADD213PD.BCST number12<>+0(SB), Z5, Z7
 	VFMADD213PD.BCST number13<>+0(SB), Z5, Z6
@@ -1010,6 +1375,14 @@ phaseShiftedAVX512next:
 	VFMADD213PD.BCST number16<>+0(SB), Z5, Z7
 	VFMADD213PD.BCST number17<>+0(SB), Z5, Z6
 	VFMADD213PD.BCST number18<>+0(SB), Z5, Z7
+	VFMADD213PD.BCST number19<>+0(SB), Z5, Z6
+	VFMADD213PD.BCST number20<>+0(SB), Z5, Z7
+	VFMADD213PD.BCST number21<>+0(SB), Z5, Z6
+	VFMADD213PD.BCST number22<>+0(SB), Z5, Z7
+	VFMADD213PD.BCST number23<>+0(SB), Z5, Z6
+	VFMADD213PD.BCST number24<>+0(SB), Z5, Z7
+	VFMADD213PD.BCST number25<>+0(SB), Z5, Z6
+	VFMADD213PD.BCST number26<>+0(SB), Z5, Z7
 	VMULPD           Z4, Z6, Z4
 	VPXORQ           Z3, Z4, Z4
 	VPXORQ           Z3, Z7, Z7
@@ -1040,7 +1413,7 @@ TEXT ·phaseSwollenAVX512(SB), NOSPLIT, $0-64
 	VBROADCASTSD swelling+40(FP), Z0
 	VBROADCASTSD scale+48(FP), Z1
 	MOVQ         points+56(FP), DI
-	VBROADCASTSD number0<>+0(SB), Z2
+	VBROADCASTSD number8<>+0(SB), Z2
 
 phaseSwollenAVX512next:
 	VMOVUPD          (AX), Z3
@@ -1050,17 +1423,17 @@ phaseSwollenAVX512next:
 	VBROADCASTSD     (BX), Z6
 	VBROADCASTSD     (SI), Z7
 	VSUBPD           Z7, Z5, Z5
-	VBROADCASTSD     number18<>+0(SB), Z7
+	VBROADCASTSD     number26<>+0(SB), Z7
 	VMULPD           Z5, Z0, Z5
 	VADDPD           Z5, Z5, Z8
 	VADDPD           Z7, Z8, Z8
 	VSQRTPD          Z8, Z8
-	VBROADCASTSD     number19<>+0(SB), Z9
-	VBROADCASTSD     number20<>+0(SB), Z10
+	VBROADCASTSD     number27<>+0(SB), Z9
+	VBROADCASTSD     number28<>+0(SB), Z10
 	VFMADD231PD      Z10, Z5, Z9
 	VMULPD           Z5, Z9, Z9
 	VADDPD           Z8, Z7, Z7
-	VBROADCASTSD     number21<>+0(SB), Z10
+	VBROADCASTSD     number29<>+0(SB), Z10
 	VFMADD231PD      Z10, Z5, Z7
 	VMULPD           Z8, Z7, Z5
 	VDIVPD           Z5, Z9, Z9
@@ -1072,16 +1445,8 @@ phaseSwollenAVX512next:
 	VSUBPD           Z6, Z7, Z6
 	VPSLLQ           $0x3f, Z5, Z5
 	VMULPD           Z6, Z6, Z7
-	VBROADCASTSD     number1<>+0(SB), Z8
-	VBROADCASTSD     number2<>+0(SB), Z9
-	VFMADD213PD.BCST number3<>+0(SB), Z7, Z8
-	VFMADD213PD.BCST number4<>+0(SB), Z7, Z9
-	VFMADD213PD.BCST number5<>+0(SB), Z7, Z8
-	VFMADD213PD.BCST number6<>+0(SB), Z7, Z9
-	VFMADD213PD.BCST number7<>+0(SB), Z7, Z8
-	VFMADD213PD.BCST number8<>+0(SB), Z7, Z9
-	VFMADD213PD.BCST number9<>+0(SB), Z7, Z8
-	VFMADD213PD.BCST number10<>+0(SB), Z7, Z9
+	VBROADCASTSD     number9<>+0(SB), Z8
+	VBROADCASTSD     number10<>+0(SB), Z9
 	VFMADD213PD.BCST number11<>+0(SB), Z7, Z8
 	VFMADD213PD.BCST number12<>+0(SB), Z7, Z9
 	VFMADD213PD.BCST number13<>+0(SB), Z7, Z8
@@ -1090,6 +1455,14 @@ phaseSwollenAVX512next:
 	VFMADD213PD.BCST number16<>+0(SB), Z7, Z9
 	VFMADD213PD.BCST number17<>+0(SB), Z7, Z8
 	VFMADD213PD.BCST number18<>+0(SB), Z7, Z9
+	VFMADD213PD.BCST number19<>+0(SB), Z7, Z8
+	VFMADD213PD.BCST number20<>+0(SB), Z7, Z9
+	VFMADD213PD.BCST number21<>+0(SB), Z7, Z8
+	VFMADD213PD.BCST number22<>+0(SB), Z7, Z9
+	VFMADD213PD.BCST number23<>+0(SB), Z7, Z8
+	VFMADD213PD.BCST number24<>+0(SB), Z7, Z9
+	VFMADD213PD.BCST number25<>+0(SB), Z7, Z8
+	VFMADD213PD.BCST number26<>+0(SB), Z7, Z9
 	VMULPD           Z6, Z8, Z6
 	VPXORQ           Z5, Z6, Z6
 	VPXORQ           Z5, Z9, Z9
@@ -1109,14 +1482,14 @@ phaseSwollenAVX512next:
 	VZEROUPPER
 	RET
 
-DATA number19<>+0(SB)/8, $(4.0)
-GLOBL number19<>(SB), RODATA|NOPTR, $8
+DATA number27<>+0(SB)/8, $(4.0)
+GLOBL number27<>(SB), RODATA|NOPTR, $8
 
-DATA number20<>+0(SB)/8, $(9.0)
-GLOBL number20<>(SB), RODATA|NOPTR, $8
+DATA number28<>+0(SB)/8, $(9.0)
+GLOBL number28<>(SB), RODATA|NOPTR, $8
 
-DATA number21<>+0(SB)/8, $(3.0)
-GLOBL number21<>(SB), RODATA|NOPTR, $8
+DATA number29<>+0(SB)/8, $(3.0)
+GLOBL number29<>(SB), RODATA|NOPTR, $8
 
 // func dampAVX512(re *float64, im *float64, d *float64, points int)
 // Requires: AVX, AVX512F
@@ -1139,6 +1512,35 @@ dampAVX512next:
 	ADDQ         $0x08, DX
 	DECQ         BX
 	JNZ          dampAVX512next
+	VZEROUPPER
+	RET
+
+// func mixAVX512(re *float64, im *float64, matrix *float64, points int)
+// Requires: AVX, AVX512F
+TEXT ·mixAVX512(SB), NOSPLIT, $0-32
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ matrix+16(FP), DX
+	MOVQ points+24(FP), BX
+
+mixAVX512next:
+	VBROADCASTSD (DX), Z0
+	VBROADCASTSD 8(DX), Z1
+	VBROADCASTSD 16(DX), Z2
+	VBROADCASTSD 24(DX), Z3
+	VMOVUPD      (AX), Z4
+	VMOVUPD      (CX), Z5
+	VMULPD       Z4, Z0, Z0
+	VFMADD231PD  Z5, Z1, Z0
+	VMOVUPD      Z0, (AX)
+	VMULPD       Z4, Z2, Z0
+	VFMADD231PD  Z5, Z3, Z0
+	VMOVUPD      Z0, (CX)
+	ADDQ         $0x40, AX
+	ADDQ         $0x40, CX
+	ADDQ         $0x20, DX
+	DECQ         BX
+	JNZ          mixAVX512next
 	VZEROUPPER
 	RET
 
@@ -1386,6 +1788,228 @@ backward2AVX2next:
 	ADDQ         DI, CX
 	DECQ         BX
 	JNZ          backward2AVX2block
+	VZEROUPPER
+	RET
+
+// func forward3AVX2(re *float64, im *float64, twiddle *float64, blocks int, span int)
+// Requires: AVX, FMA3
+TEXT ·forward3AVX2(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+forward3AVX2block:
+	MOVQ DX, R8
+	MOVQ SI, R9
+
+forward3AVX2next:
+	VMOVUPD      (AX), Y0
+	VMOVUPD      (CX), Y1
+	VMOVUPD      (AX)(DI*1), Y2
+	VMOVUPD      (CX)(DI*1), Y3
+	VMOVUPD      (AX)(DI*2), Y4
+	VMOVUPD      (CX)(DI*2), Y5
+	VSUBPD       Y4, Y2, Y6
+	VSUBPD       Y5, Y3, Y7
+	VADDPD       Y4, Y2, Y2
+	VADDPD       Y5, Y3, Y3
+	VADDPD       Y2, Y0, Y4
+	VADDPD       Y3, Y1, Y5
+	VBROADCASTSD number0<>+0(SB), Y8
+	VFMADD231PD  Y8, Y2, Y0
+	VFMADD231PD  Y8, Y3, Y1
+	VBROADCASTSD number1<>+0(SB), Y2
+	VMULPD       Y2, Y6, Y3
+	VMULPD       Y2, Y7, Y2
+	VADDPD       Y2, Y0, Y6
+	VSUBPD       Y3, Y1, Y7
+	VSUBPD       Y2, Y0, Y0
+	VADDPD       Y3, Y1, Y1
+	VMOVUPD      Y4, (AX)
+	VMOVUPD      Y5, (CX)
+	VBROADCASTSD (R8), Y2
+	VBROADCASTSD 8(R8), Y3
+	VMULPD       Y2, Y6, Y4
+	VMULPD       Y3, Y6, Y5
+	VFNMADD231PD Y3, Y7, Y4
+	VFMADD231PD  Y2, Y7, Y5
+	VMOVUPD      Y4, (AX)(DI*1)
+	VMOVUPD      Y5, (CX)(DI*1)
+	VBROADCASTSD 16(R8), Y2
+	VBROADCASTSD 24(R8), Y3
+	VMULPD       Y2, Y0, Y4
+	VMULPD       Y3, Y0, Y0
+	VFNMADD231PD Y3, Y1, Y4
+	VFMADD231PD  Y2, Y1, Y0
+	VMOVUPD      Y4, (AX)(DI*2)
+	VMOVUPD      Y0, (CX)(DI*2)
+	VMOVUPD      32(AX), Y0
+	VMOVUPD      32(CX), Y1
+	VMOVUPD      32(AX)(DI*1), Y2
+	VMOVUPD      32(CX)(DI*1), Y3
+	VMOVUPD      32(AX)(DI*2), Y4
+	VMOVUPD      32(CX)(DI*2), Y5
+	VSUBPD       Y4, Y2, Y6
+	VSUBPD       Y5, Y3, Y7
+	VADDPD       Y4, Y2, Y2
+	VADDPD       Y5, Y3, Y3
+	VADDPD       Y2, Y0, Y4
+	VADDPD       Y3, Y1, Y5
+	VBROADCASTSD number0<>+0(SB), Y8
+	VFMADD231PD  Y8, Y2, Y0
+	VFMADD231PD  Y8, Y3, Y1
+	VBROADCASTSD number1<>+0(SB), Y2
+	VMULPD       Y2, Y6, Y3
+	VMULPD       Y2, Y7, Y2
+	VADDPD       Y2, Y0, Y6
+	VSUBPD       Y3, Y1, Y7
+	VSUBPD       Y2, Y0, Y0
+	VADDPD       Y3, Y1, Y1
+	VMOVUPD      Y4, 32(AX)
+	VMOVUPD      Y5, 32(CX)
+	VBROADCASTSD (R8), Y2
+	VBROADCASTSD 8(R8), Y3
+	VMULPD       Y2, Y6, Y4
+	VMULPD       Y3, Y6, Y5
+	VFNMADD231PD Y3, Y7, Y4
+	VFMADD231PD  Y2, Y7, Y5
+	VMOVUPD      Y4, 32(AX)(DI*1)
+	VMOVUPD      Y5, 32(CX)(DI*1)
+	VBROADCASTSD 16(R8), Y2
+	VBROADCASTSD 24(R8), Y3
+	VMULPD       Y2, Y0, Y4
+	VMULPD       Y3, Y0, Y0
+	VFNMADD231PD Y3, Y1, Y4
+	VFMADD231PD  Y2, Y1, Y0
+	VMOVUPD      Y4, 32(AX)(DI*2)
+	VMOVUPD      Y0, 32(CX)(DI*2)
+	ADDQ         $0x40, AX
+	ADDQ         $0x40, CX
+	ADDQ         $0x00000020, R8
+	DECQ         R9
+	JNZ          forward3AVX2next
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	DECQ         BX
+	JNZ          forward3AVX2block
+	VZEROUPPER
+	RET
+
+// func backward3AVX2(re *float64, im *float64, twiddle *float64, blocks int, span int)
+// Requires: AVX, FMA3
+TEXT ·backward3AVX2(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+backward3AVX2block:
+	MOVQ DX, R8
+	MOVQ SI, R9
+
+backward3AVX2next:
+	VMOVUPD      (AX), Y0
+	VMOVUPD      (CX), Y1
+	VMOVUPD      (AX)(DI*1), Y2
+	VMOVUPD      (CX)(DI*1), Y3
+	VBROADCASTSD (R8), Y4
+	VBROADCASTSD 8(R8), Y5
+	VMULPD       Y4, Y2, Y6
+	VMULPD       Y4, Y3, Y4
+	VFMADD231PD  Y5, Y3, Y6
+	VFNMADD231PD Y5, Y2, Y4
+	VMOVUPD      (AX)(DI*2), Y2
+	VMOVUPD      (CX)(DI*2), Y3
+	VBROADCASTSD 16(R8), Y5
+	VBROADCASTSD 24(R8), Y7
+	VMULPD       Y5, Y2, Y8
+	VMULPD       Y5, Y3, Y5
+	VFMADD231PD  Y7, Y3, Y8
+	VFNMADD231PD Y7, Y2, Y5
+	VSUBPD       Y5, Y4, Y2
+	VSUBPD       Y8, Y6, Y3
+	VADDPD       Y5, Y4, Y4
+	VADDPD       Y8, Y6, Y5
+	VADDPD       Y4, Y1, Y6
+	VADDPD       Y5, Y0, Y7
+	VBROADCASTSD number0<>+0(SB), Y8
+	VFMADD231PD  Y8, Y4, Y1
+	VFMADD231PD  Y8, Y5, Y0
+	VBROADCASTSD number1<>+0(SB), Y4
+	VMULPD       Y4, Y2, Y2
+	VMULPD       Y4, Y3, Y3
+	VADDPD       Y3, Y1, Y4
+	VSUBPD       Y2, Y0, Y5
+	VSUBPD       Y3, Y1, Y1
+	VADDPD       Y2, Y0, Y0
+	VMOVUPD      Y7, (AX)
+	VMOVUPD      Y6, (CX)
+	VMOVUPD      Y5, (AX)(DI*1)
+	VMOVUPD      Y4, (CX)(DI*1)
+	VMOVUPD      Y0, (AX)(DI*2)
+	VMOVUPD      Y1, (CX)(DI*2)
+	VMOVUPD      32(AX), Y0
+	VMOVUPD      32(CX), Y1
+	VMOVUPD      32(AX)(DI*1), Y2
+	VMOVUPD      32(CX)(DI*1), Y3
+	VBROADCASTSD (R8), Y4
+	VBROADCASTSD 8(R8), Y5
+	VMULPD       Y4, Y2, Y6
+	VMULPD       Y4, Y3, Y4
+	VFMADD231PD  Y5, Y3, Y6
+	VFNMADD231PD Y5, Y2, Y4
+	VMOVUPD      32(AX)(DI*2), Y2
+	VMOVUPD      32(CX)(DI*2), Y3
+	VBROADCASTSD 16(R8), Y5
+	VBROADCASTSD 24(R8), Y7
+	VMULPD       Y5, Y2, Y8
+	VMULPD       Y5, Y3, Y5
+	VFMADD231PD  Y7, Y3, Y8
+	VFNMADD231PD Y7, Y2, Y5
+	VSUBPD       Y5, Y4, Y2
+	VSUBPD       Y8, Y6, Y3
+	VADDPD       Y5, Y4, Y4
+	VADDPD       Y8, Y6, Y5
+	VADDPD       Y4, Y1, Y6
+	VADDPD       Y5, Y0, Y7
+	VBROADCASTSD number0<>+0(SB), Y8
+	VFMADD231PD  Y8, Y4, Y1
+	VFMADD231PD  Y8, Y5, Y0
+	VBROADCASTSD number1<>+0(SB), Y4
+	VMULPD       Y4, Y2, Y2
+	VMULPD       Y4, Y3, Y3
+	VADDPD       Y3, Y1, Y4
+	VSUBPD       Y2, Y0, Y5
+	VSUBPD       Y3, Y1, Y1
+	VADDPD       Y2, Y0, Y0
+	VMOVUPD      Y7, 32(AX)
+	VMOVUPD      Y6, 32(CX)
+	VMOVUPD      Y5, 32(AX)(DI*1)
+	VMOVUPD      Y4, 32(CX)(DI*1)
+	VMOVUPD      Y0, 32(AX)(DI*2)
+	VMOVUPD      Y1, 32(CX)(DI*2)
+	ADDQ         $0x40, AX
+	ADDQ         $0x40, CX
+	ADDQ         $0x00000020, R8
+	DECQ         R9
+	JNZ          backward3AVX2next
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	DECQ         BX
+	JNZ          backward3AVX2block
 	VZEROUPPER
 	RET
 
@@ -1655,6 +2279,440 @@ backward4AVX2next:
 	VZEROUPPER
 	RET
 
+// func forward5AVX2(re *float64, im *float64, twiddle *float64, blocks int, span int)
+// Requires: AVX, FMA3
+TEXT ·forward5AVX2(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+forward5AVX2block:
+	MOVQ DX, R11
+	MOVQ SI, R12
+
+forward5AVX2next:
+	LEAQ         (AX)(DI*4), R9
+	LEAQ         (CX)(DI*4), R10
+	VMOVUPD      (AX), Y0
+	VMOVUPD      (CX), Y1
+	VMOVUPD      (AX)(DI*1), Y2
+	VMOVUPD      (CX)(DI*1), Y3
+	VMOVUPD      (AX)(DI*2), Y4
+	VMOVUPD      (CX)(DI*2), Y5
+	VMOVUPD      (AX)(R8*1), Y6
+	VMOVUPD      (CX)(R8*1), Y7
+	VMOVUPD      (R9), Y8
+	VMOVUPD      (R10), Y9
+	VSUBPD       Y8, Y2, Y10
+	VSUBPD       Y9, Y3, Y11
+	VADDPD       Y8, Y2, Y2
+	VADDPD       Y9, Y3, Y3
+	VSUBPD       Y6, Y4, Y8
+	VSUBPD       Y7, Y5, Y9
+	VADDPD       Y6, Y4, Y4
+	VADDPD       Y7, Y5, Y5
+	VADDPD       Y2, Y0, Y6
+	VADDPD       Y3, Y1, Y7
+	VADDPD       Y4, Y6, Y6
+	VADDPD       Y5, Y7, Y7
+	VMOVAPD      Y0, Y12
+	VMOVAPD      Y1, Y13
+	VBROADCASTSD number2<>+0(SB), Y14
+	VFMADD231PD  Y14, Y2, Y12
+	VFMADD231PD  Y14, Y3, Y13
+	VBROADCASTSD number3<>+0(SB), Y14
+	VFMADD231PD  Y14, Y4, Y12
+	VFMADD231PD  Y14, Y5, Y13
+	VBROADCASTSD number3<>+0(SB), Y14
+	VFMADD231PD  Y14, Y2, Y0
+	VFMADD231PD  Y14, Y3, Y1
+	VBROADCASTSD number2<>+0(SB), Y2
+	VFMADD231PD  Y2, Y4, Y0
+	VFMADD231PD  Y2, Y5, Y1
+	VBROADCASTSD number4<>+0(SB), Y2
+	VMULPD       Y2, Y10, Y3
+	VMULPD       Y2, Y11, Y2
+	VBROADCASTSD number5<>+0(SB), Y4
+	VFMADD231PD  Y4, Y8, Y3
+	VFMADD231PD  Y4, Y9, Y2
+	VBROADCASTSD number5<>+0(SB), Y4
+	VMULPD       Y4, Y10, Y5
+	VMULPD       Y4, Y11, Y4
+	VBROADCASTSD number6<>+0(SB), Y10
+	VFMADD231PD  Y10, Y8, Y5
+	VFMADD231PD  Y10, Y9, Y4
+	VADDPD       Y2, Y12, Y8
+	VSUBPD       Y3, Y13, Y9
+	VADDPD       Y4, Y0, Y10
+	VSUBPD       Y5, Y1, Y11
+	VSUBPD       Y4, Y0, Y0
+	VADDPD       Y5, Y1, Y1
+	VSUBPD       Y2, Y12, Y2
+	VADDPD       Y3, Y13, Y3
+	VMOVUPD      Y6, (AX)
+	VMOVUPD      Y7, (CX)
+	VBROADCASTSD (R11), Y4
+	VBROADCASTSD 8(R11), Y5
+	VMULPD       Y4, Y8, Y6
+	VMULPD       Y5, Y8, Y7
+	VFNMADD231PD Y5, Y9, Y6
+	VFMADD231PD  Y4, Y9, Y7
+	VMOVUPD      Y6, (AX)(DI*1)
+	VMOVUPD      Y7, (CX)(DI*1)
+	VBROADCASTSD 16(R11), Y4
+	VBROADCASTSD 24(R11), Y5
+	VMULPD       Y4, Y10, Y6
+	VMULPD       Y5, Y10, Y7
+	VFNMADD231PD Y5, Y11, Y6
+	VFMADD231PD  Y4, Y11, Y7
+	VMOVUPD      Y6, (AX)(DI*2)
+	VMOVUPD      Y7, (CX)(DI*2)
+	VBROADCASTSD 32(R11), Y4
+	VBROADCASTSD 40(R11), Y5
+	VMULPD       Y4, Y0, Y6
+	VMULPD       Y5, Y0, Y0
+	VFNMADD231PD Y5, Y1, Y6
+	VFMADD231PD  Y4, Y1, Y0
+	VMOVUPD      Y6, (AX)(R8*1)
+	VMOVUPD      Y0, (CX)(R8*1)
+	VBROADCASTSD 48(R11), Y0
+	VBROADCASTSD 56(R11), Y1
+	VMULPD       Y0, Y2, Y4
+	VMULPD       Y1, Y2, Y2
+	VFNMADD231PD Y1, Y3, Y4
+	VFMADD231PD  Y0, Y3, Y2
+	VMOVUPD      Y4, (R9)
+	VMOVUPD      Y2, (R10)
+	VMOVUPD      32(AX), Y0
+	VMOVUPD      32(CX), Y1
+	VMOVUPD      32(AX)(DI*1), Y2
+	VMOVUPD      32(CX)(DI*1), Y3
+	VMOVUPD      32(AX)(DI*2), Y4
+	VMOVUPD      32(CX)(DI*2), Y5
+	VMOVUPD      32(AX)(R8*1), Y6
+	VMOVUPD      32(CX)(R8*1), Y7
+	VMOVUPD      32(R9), Y8
+	VMOVUPD      32(R10), Y9
+	VSUBPD       Y8, Y2, Y10
+	VSUBPD       Y9, Y3, Y11
+	VADDPD       Y8, Y2, Y2
+	VADDPD       Y9, Y3, Y3
+	VSUBPD       Y6, Y4, Y8
+	VSUBPD       Y7, Y5, Y9
+	VADDPD       Y6, Y4, Y4
+	VADDPD       Y7, Y5, Y5
+	VADDPD       Y2, Y0, Y6
+	VADDPD       Y3, Y1, Y7
+	VADDPD       Y4, Y6, Y6
+	VADDPD       Y5, Y7, Y7
+	VMOVAPD      Y0, Y12
+	VMOVAPD      Y1, Y13
+	VBROADCASTSD number2<>+0(SB), Y14
+	VFMADD231PD  Y14, Y2, Y12
+	VFMADD231PD  Y14, Y3, Y13
+	VBROADCASTSD number3<>+0(SB), Y14
+	VFMADD231PD  Y14, Y4, Y12
+	VFMADD231PD  Y14, Y5, Y13
+	VBROADCASTSD number3<>+0(SB), Y14
+	VFMADD231PD  Y14, Y2, Y0
+	VFMADD231PD  Y14, Y3, Y1
+	VBROADCASTSD number2<>+0(SB), Y2
+	VFMADD231PD  Y2, Y4, Y0
+	VFMADD231PD  Y2, Y5, Y1
+	VBROADCASTSD number4<>+0(SB), Y2
+	VMULPD       Y2, Y10, Y3
+	VMULPD       Y2, Y11, Y2
+	VBROADCASTSD number5<>+0(SB), Y4
+	VFMADD231PD  Y4, Y8, Y3
+	VFMADD231PD  Y4, Y9, Y2
+	VBROADCASTSD number5<>+0(SB), Y4
+	VMULPD       Y4, Y10, Y5
+	VMULPD       Y4, Y11, Y4
+	VBROADCASTSD number6<>+0(SB), Y10
+	VFMADD231PD  Y10, Y8, Y5
+	VFMADD231PD  Y10, Y9, Y4
+	VADDPD       Y2, Y12, Y8
+	VSUBPD       Y3, Y13, Y9
+	VADDPD       Y4, Y0, Y10
+	VSUBPD       Y5, Y1, Y11
+	VSUBPD       Y4, Y0, Y0
+	VADDPD       Y5, Y1, Y1
+	VSUBPD       Y2, Y12, Y2
+	VADDPD       Y3, Y13, Y3
+	VMOVUPD      Y6, 32(AX)
+	VMOVUPD      Y7, 32(CX)
+	VBROADCASTSD (R11), Y4
+	VBROADCASTSD 8(R11), Y5
+	VMULPD       Y4, Y8, Y6
+	VMULPD       Y5, Y8, Y7
+	VFNMADD231PD Y5, Y9, Y6
+	VFMADD231PD  Y4, Y9, Y7
+	VMOVUPD      Y6, 32(AX)(DI*1)
+	VMOVUPD      Y7, 32(CX)(DI*1)
+	VBROADCASTSD 16(R11), Y4
+	VBROADCASTSD 24(R11), Y5
+	VMULPD       Y4, Y10, Y6
+	VMULPD       Y5, Y10, Y7
+	VFNMADD231PD Y5, Y11, Y6
+	VFMADD231PD  Y4, Y11, Y7
+	VMOVUPD      Y6, 32(AX)(DI*2)
+	VMOVUPD      Y7, 32(CX)(DI*2)
+	VBROADCASTSD 32(R11), Y4
+	VBROADCASTSD 40(R11), Y5
+	VMULPD       Y4, Y0, Y6
+	VMULPD       Y5, Y0, Y0
+	VFNMADD231PD Y5, Y1, Y6
+	VFMADD231PD  Y4, Y1, Y0
+	VMOVUPD      Y6, 32(AX)(R8*1)
+	VMOVUPD      Y0, 32(CX)(R8*1)
+	VBROADCASTSD 48(R11), Y0
+	VBROADCASTSD 56(R11), Y1
+	VMULPD       Y0, Y2, Y4
+	VMULPD       Y1, Y2, Y2
+	VFNMADD231PD Y1, Y3, Y4
+	VFMADD231PD  Y0, Y3, Y2
+	VMOVUPD      Y4, 32(R9)
+	VMOVUPD      Y2, 32(R10)
+	ADDQ         $0x40, AX
+	ADDQ         $0x40, CX
+	ADDQ         $0x00000040, R11
+	DECQ         R12
+	JNZ          forward5AVX2next
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	DECQ         BX
+	JNZ          forward5AVX2block
+	VZEROUPPER
+	RET
+
+// func backward5AVX2(re *float64, im *float64, twiddle *float64, blocks int, span int)
+// Requires: AVX, FMA3
+TEXT ·backward5AVX2(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+backward5AVX2block:
+	MOVQ DX, R11
+	MOVQ SI, R12
+
+backward5AVX2next:
+	LEAQ         (AX)(DI*4), R9
+	LEAQ         (CX)(DI*4), R10
+	VMOVUPD      (AX), Y0
+	VMOVUPD      (CX), Y1
+	VMOVUPD      (AX)(DI*1), Y2
+	VMOVUPD      (CX)(DI*1), Y3
+	VBROADCASTSD (R11), Y4
+	VBROADCASTSD 8(R11), Y5
+	VMULPD       Y4, Y2, Y6
+	VMULPD       Y4, Y3, Y4
+	VFMADD231PD  Y5, Y3, Y6
+	VFNMADD231PD Y5, Y2, Y4
+	VMOVUPD      (AX)(DI*2), Y2
+	VMOVUPD      (CX)(DI*2), Y3
+	VBROADCASTSD 16(R11), Y5
+	VBROADCASTSD 24(R11), Y7
+	VMULPD       Y5, Y2, Y8
+	VMULPD       Y5, Y3, Y5
+	VFMADD231PD  Y7, Y3, Y8
+	VFNMADD231PD Y7, Y2, Y5
+	VMOVUPD      (AX)(R8*1), Y2
+	VMOVUPD      (CX)(R8*1), Y3
+	VBROADCASTSD 32(R11), Y7
+	VBROADCASTSD 40(R11), Y9
+	VMULPD       Y7, Y2, Y10
+	VMULPD       Y7, Y3, Y7
+	VFMADD231PD  Y9, Y3, Y10
+	VFNMADD231PD Y9, Y2, Y7
+	VMOVUPD      (R9), Y2
+	VMOVUPD      (R10), Y3
+	VBROADCASTSD 48(R11), Y9
+	VBROADCASTSD 56(R11), Y11
+	VMULPD       Y9, Y2, Y12
+	VMULPD       Y9, Y3, Y9
+	VFMADD231PD  Y11, Y3, Y12
+	VFNMADD231PD Y11, Y2, Y9
+	VSUBPD       Y9, Y4, Y2
+	VSUBPD       Y12, Y6, Y3
+	VADDPD       Y9, Y4, Y4
+	VADDPD       Y12, Y6, Y6
+	VSUBPD       Y7, Y5, Y9
+	VSUBPD       Y10, Y8, Y11
+	VADDPD       Y7, Y5, Y5
+	VADDPD       Y10, Y8, Y7
+	VADDPD       Y4, Y1, Y8
+	VADDPD       Y6, Y0, Y10
+	VADDPD       Y5, Y8, Y8
+	VADDPD       Y7, Y10, Y10
+	VMOVAPD      Y1, Y12
+	VMOVAPD      Y0, Y13
+	VBROADCASTSD number2<>+0(SB), Y14
+	VFMADD231PD  Y14, Y4, Y12
+	VFMADD231PD  Y14, Y6, Y13
+	VBROADCASTSD number3<>+0(SB), Y14
+	VFMADD231PD  Y14, Y5, Y12
+	VFMADD231PD  Y14, Y7, Y13
+	VBROADCASTSD number3<>+0(SB), Y14
+	VFMADD231PD  Y14, Y4, Y1
+	VFMADD231PD  Y14, Y6, Y0
+	VBROADCASTSD number2<>+0(SB), Y4
+	VFMADD231PD  Y4, Y5, Y1
+	VFMADD231PD  Y4, Y7, Y0
+	VBROADCASTSD number4<>+0(SB), Y4
+	VMULPD       Y4, Y2, Y5
+	VMULPD       Y4, Y3, Y4
+	VBROADCASTSD number5<>+0(SB), Y6
+	VFMADD231PD  Y6, Y9, Y5
+	VFMADD231PD  Y6, Y11, Y4
+	VBROADCASTSD number5<>+0(SB), Y6
+	VMULPD       Y6, Y2, Y2
+	VMULPD       Y6, Y3, Y3
+	VBROADCASTSD number6<>+0(SB), Y6
+	VFMADD231PD  Y6, Y9, Y2
+	VFMADD231PD  Y6, Y11, Y3
+	VADDPD       Y4, Y12, Y6
+	VSUBPD       Y5, Y13, Y7
+	VADDPD       Y3, Y1, Y9
+	VSUBPD       Y2, Y0, Y11
+	VSUBPD       Y3, Y1, Y1
+	VADDPD       Y2, Y0, Y0
+	VSUBPD       Y4, Y12, Y2
+	VADDPD       Y5, Y13, Y3
+	VMOVUPD      Y10, (AX)
+	VMOVUPD      Y8, (CX)
+	VMOVUPD      Y7, (AX)(DI*1)
+	VMOVUPD      Y6, (CX)(DI*1)
+	VMOVUPD      Y11, (AX)(DI*2)
+	VMOVUPD      Y9, (CX)(DI*2)
+	VMOVUPD      Y0, (AX)(R8*1)
+	VMOVUPD      Y1, (CX)(R8*1)
+	VMOVUPD      Y3, (R9)
+	VMOVUPD      Y2, (R10)
+	VMOVUPD      32(AX), Y0
+	VMOVUPD      32(CX), Y1
+	VMOVUPD      32(AX)(DI*1), Y2
+	VMOVUPD      32(CX)(DI*1), Y3
+	VBROADCASTSD (R11), Y4
+	VBROADCASTSD 8(R11), Y5
+	VMULPD       Y4, Y2, Y6
+	VMULPD       Y4, Y3, Y4
+	VFMADD231PD  Y5, Y3, Y6
+	VFNMADD231PD Y5, Y2, Y4
+	VMOVUPD      32(AX)(DI*2), Y2
+	VMOVUPD      32(CX)(DI*2), Y3
+	VBROADCASTSD 16(R11), Y5
+	VBROADCASTSD 24(R11), Y7
+	VMULPD       Y5, Y2, Y8
+	VMULPD       Y5, Y3, Y5
+	VFMADD231PD  Y7, Y3, Y8
+	VFNMADD231PD Y7, Y2, Y5
+	VMOVUPD      32(AX)(R8*1), Y2
+	VMOVUPD      32(CX)(R8*1), Y3
+	VBROADCASTSD 32(R11), Y7
+	VBROADCASTSD 40(R11), Y9
+	VMULPD       Y7, Y2, Y10
+	VMULPD       Y7, Y3, Y7
+	VFMADD231PD  Y9, Y3, Y10
+	VFNMADD231PD Y9, Y2, Y7
+	VMOVUPD      32(R9), Y2
+	VMOVUPD      32(R10), Y3
+	VBROADCASTSD 48(R11), Y9
+	VBROADCASTSD 56(R11), Y11
+	VMULPD       Y9, Y2, Y12
+	VMULPD       Y9, Y3, Y9
+	VFMADD231PD  Y11, Y3, Y12
+	VFNMADD231PD Y11, Y2, Y9
+	VSUBPD       Y9, Y4, Y2
+	VSUBPD       Y12, Y6, Y3
+	VADDPD       Y9, Y4, Y4
+	VADDPD       Y12, Y6, Y6
+	VSUBPD       Y7, Y5, Y9
+	VSUBPD       Y10, Y8, Y11
+	VADDPD       Y7, Y5, Y5
+	VADDPD       Y10, Y8, Y7
+	VADDPD       Y4, Y1, Y8
+	VADDPD       Y6, Y0, Y10
+	VADDPD       Y5, Y8, Y8
+	VADDPD       Y7, Y10, Y10
+	VMOVAPD      Y1, Y12
+	VMOVAPD      Y0, Y13
+	VBROADCASTSD number2<>+0(SB), Y14
+	VFMADD231PD  Y14, Y4, Y12
+	VFMADD231PD  Y14, Y6, Y13
+	VBROADCASTSD number3<>+0(SB), Y14
+	VFMADD231PD  Y14, Y5, Y12
+	VFMADD231PD  Y14, Y7, Y13
+	VBROADCASTSD number3<>+0(SB), Y14
+	VFMADD231PD  Y14, Y4, Y1
+	VFMADD231PD  Y14, Y6, Y0
+	VBROADCASTSD number2<>+0(SB), Y4
+	VFMADD231PD  Y4, Y5, Y1
+	VFMADD231PD  Y4, Y7, Y0
+	VBROADCASTSD number4<>+0(SB), Y4
+	VMULPD       Y4, Y2, Y5
+	VMULPD       Y4, Y3, Y4
+	VBROADCASTSD number5<>+0(SB), Y6
+	VFMADD231PD  Y6, Y9, Y5
+	VFMADD231PD  Y6, Y11, Y4
+	VBROADCASTSD number5<>+0(SB), Y6
+	VMULPD       Y6, Y2, Y2
+	VMULPD       Y6, Y3, Y3
+	VBROADCASTSD number6<>+0(SB), Y6
+	VFMADD231PD  Y6, Y9, Y2
+	VFMADD231PD  Y6, Y11, Y3
+	VADDPD       Y4, Y12, Y6
+	VSUBPD       Y5, Y13, Y7
+	VADDPD       Y3, Y1, Y9
+	VSUBPD       Y2, Y0, Y11
+	VSUBPD       Y3, Y1, Y1
+	VADDPD       Y2, Y0, Y0
+	VSUBPD       Y4, Y12, Y2
+	VADDPD       Y5, Y13, Y3
+	VMOVUPD      Y10, 32(AX)
+	VMOVUPD      Y8, 32(CX)
+	VMOVUPD      Y7, 32(AX)(DI*1)
+	VMOVUPD      Y6, 32(CX)(DI*1)
+	VMOVUPD      Y11, 32(AX)(DI*2)
+	VMOVUPD      Y9, 32(CX)(DI*2)
+	VMOVUPD      Y0, 32(AX)(R8*1)
+	VMOVUPD      Y1, 32(CX)(R8*1)
+	VMOVUPD      Y3, 32(R9)
+	VMOVUPD      Y2, 32(R10)
+	ADDQ         $0x40, AX
+	ADDQ         $0x40, CX
+	ADDQ         $0x00000040, R11
+	DECQ         R12
+	JNZ          backward5AVX2next
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	DECQ         BX
+	JNZ          backward5AVX2block
+	VZEROUPPER
+	RET
+
 // func middle4AVX2(re *float64, im *float64, kinRe *float64, kinIm *float64, groups int)
 // Requires: AVX, FMA3
 TEXT ·middle4AVX2(SB), NOSPLIT, $0-40
@@ -1826,7 +2884,7 @@ TEXT ·phaseCubicAVX2(SB), NOSPLIT, $0-40
 	MOVQ         potential+16(FP), DX
 	MOVQ         coupling+24(FP), BX
 	MOVQ         points+32(FP), SI
-	VBROADCASTSD number0<>+0(SB), Y0
+	VBROADCASTSD number8<>+0(SB), Y0
 
 phaseCubicAVX2next:
 	VMOVUPD      (AX), Y1
@@ -1841,24 +2899,8 @@ phaseCubicAVX2next:
 	VSUBPD       Y4, Y5, Y4
 	VPSLLQ       $0x3f, Y3, Y3
 	VMULPD       Y4, Y4, Y5
-	VBROADCASTSD number1<>+0(SB), Y6
-	VBROADCASTSD number2<>+0(SB), Y7
-	VBROADCASTSD number3<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y6
-	VBROADCASTSD number4<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y7
-	VBROADCASTSD number5<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y6
-	VBROADCASTSD number6<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y7
-	VBROADCASTSD number7<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y6
-	VBROADCASTSD number8<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y7
-	VBROADCASTSD number9<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y6
-	VBROADCASTSD number10<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y7
+	VBROADCASTSD number9<>+0(SB), Y6
+	VBROADCASTSD number10<>+0(SB), Y7
 	VBROADCASTSD number11<>+0(SB), Y8
 	VFMADD213PD  Y8, Y5, Y6
 	VBROADCASTSD number12<>+0(SB), Y8
@@ -1874,6 +2916,22 @@ phaseCubicAVX2next:
 	VBROADCASTSD number17<>+0(SB), Y8
 	VFMADD213PD  Y8, Y5, Y6
 	VBROADCASTSD number18<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y7
+	VBROADCASTSD number19<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y6
+	VBROADCASTSD number20<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y7
+	VBROADCASTSD number21<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y6
+	VBROADCASTSD number22<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y7
+	VBROADCASTSD number23<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y6
+	VBROADCASTSD number24<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y7
+	VBROADCASTSD number25<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y6
+	VBROADCASTSD number26<>+0(SB), Y8
 	VFMADD213PD  Y8, Y5, Y7
 	VMULPD       Y4, Y6, Y4
 	VXORPD       Y3, Y4, Y4
@@ -1896,24 +2954,8 @@ phaseCubicAVX2next:
 	VSUBPD       Y4, Y5, Y4
 	VPSLLQ       $0x3f, Y3, Y3
 	VMULPD       Y4, Y4, Y5
-	VBROADCASTSD number1<>+0(SB), Y6
-	VBROADCASTSD number2<>+0(SB), Y7
-	VBROADCASTSD number3<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y6
-	VBROADCASTSD number4<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y7
-	VBROADCASTSD number5<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y6
-	VBROADCASTSD number6<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y7
-	VBROADCASTSD number7<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y6
-	VBROADCASTSD number8<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y7
-	VBROADCASTSD number9<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y6
-	VBROADCASTSD number10<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y7
+	VBROADCASTSD number9<>+0(SB), Y6
+	VBROADCASTSD number10<>+0(SB), Y7
 	VBROADCASTSD number11<>+0(SB), Y8
 	VFMADD213PD  Y8, Y5, Y6
 	VBROADCASTSD number12<>+0(SB), Y8
@@ -1929,6 +2971,22 @@ phaseCubicAVX2next:
 	VBROADCASTSD number17<>+0(SB), Y8
 	VFMADD213PD  Y8, Y5, Y6
 	VBROADCASTSD number18<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y7
+	VBROADCASTSD number19<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y6
+	VBROADCASTSD number20<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y7
+	VBROADCASTSD number21<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y6
+	VBROADCASTSD number22<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y7
+	VBROADCASTSD number23<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y6
+	VBROADCASTSD number24<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y7
+	VBROADCASTSD number25<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y6
+	VBROADCASTSD number26<>+0(SB), Y8
 	VFMADD213PD  Y8, Y5, Y7
 	VMULPD       Y4, Y6, Y4
 	VXORPD       Y3, Y4, Y4
@@ -1957,7 +3015,7 @@ TEXT ·phaseShiftedAVX2(SB), NOSPLIT, $0-48
 	MOVQ         coupling+24(FP), BX
 	MOVQ         density+32(FP), SI
 	MOVQ         points+40(FP), DI
-	VBROADCASTSD number0<>+0(SB), Y0
+	VBROADCASTSD number8<>+0(SB), Y0
 
 phaseShiftedAVX2next:
 	VMOVUPD      (AX), Y1
@@ -1974,24 +3032,8 @@ phaseShiftedAVX2next:
 	VSUBPD       Y4, Y5, Y4
 	VPSLLQ       $0x3f, Y3, Y3
 	VMULPD       Y4, Y4, Y5
-	VBROADCASTSD number1<>+0(SB), Y6
-	VBROADCASTSD number2<>+0(SB), Y7
-	VBROADCASTSD number3<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y6
-	VBROADCASTSD number4<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y7
-	VBROADCASTSD number5<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y6
-	VBROADCASTSD number6<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y7
-	VBROADCASTSD number7<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y6
-	VBROADCASTSD number8<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y7
-	VBROADCASTSD number9<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y6
-	VBROADCASTSD number10<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y7
+	VBROADCASTSD number9<>+0(SB), Y6
+	VBROADCASTSD number10<>+0(SB), Y7
 	VBROADCASTSD number11<>+0(SB), Y8
 	VFMADD213PD  Y8, Y5, Y6
 	VBROADCASTSD number12<>+0(SB), Y8
@@ -2007,6 +3049,22 @@ phaseShiftedAVX2next:
 	VBROADCASTSD number17<>+0(SB), Y8
 	VFMADD213PD  Y8, Y5, Y6
 	VBROADCASTSD number18<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y7
+	VBROADCASTSD number19<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y6
+	VBROADCASTSD number20<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y7
+	VBROADCASTSD number21<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y6
+	VBROADCASTSD number22<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y7
+	VBROADCASTSD number23<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y6
+	VBROADCASTSD number24<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y7
+	VBROADCASTSD number25<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y6
+	VBROADCASTSD number26<>+0(SB), Y8
 	VFMADD213PD  Y8, Y5, Y7
 	VMULPD       Y4, Y6, Y4
 	VXORPD       Y3, Y4, Y4
@@ -2031,24 +3089,8 @@ phaseShiftedAVX2next:
 	VSUBPD       Y4, Y5, Y4
 	VPSLLQ       $0x3f, Y3, Y3
 	VMULPD       Y4, Y4, Y5
-	VBROADCASTSD number1<>+0(SB), Y6
-	VBROADCASTSD number2<>+0(SB), Y7
-	VBROADCASTSD number3<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y6
-	VBROADCASTSD number4<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y7
-	VBROADCASTSD number5<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y6
-	VBROADCASTSD number6<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y7
-	VBROADCASTSD number7<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y6
-	VBROADCASTSD number8<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y7
-	VBROADCASTSD number9<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y6
-	VBROADCASTSD number10<>+0(SB), Y8
-	VFMADD213PD  Y8, Y5, Y7
+	VBROADCASTSD number9<>+0(SB), Y6
+	VBROADCASTSD number10<>+0(SB), Y7
 	VBROADCASTSD number11<>+0(SB), Y8
 	VFMADD213PD  Y8, Y5, Y6
 	VBROADCASTSD number12<>+0(SB), Y8
@@ -2064,6 +3106,22 @@ phaseShiftedAVX2next:
 	VBROADCASTSD number17<>+0(SB), Y8
 	VFMADD213PD  Y8, Y5, Y6
 	VBROADCASTSD number18<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y7
+	VBROADCASTSD number19<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y6
+	VBROADCASTSD number20<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y7
+	VBROADCASTSD number21<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y6
+	VBROADCASTSD number22<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y7
+	VBROADCASTSD number23<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y6
+	VBROADCASTSD number24<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y7
+	VBROADCASTSD number25<>+0(SB), Y8
+	VFMADD213PD  Y8, Y5, Y6
+	VBROADCASTSD number26<>+0(SB), Y8
 	VFMADD213PD  Y8, Y5, Y7
 	VMULPD       Y4, Y6, Y4
 	VXORPD       Y3, Y4, Y4
@@ -2095,7 +3153,7 @@ TEXT ·phaseSwollenAVX2(SB), NOSPLIT, $0-64
 	VBROADCASTSD swelling+40(FP), Y0
 	VBROADCASTSD scale+48(FP), Y1
 	MOVQ         points+56(FP), DI
-	VBROADCASTSD number0<>+0(SB), Y2
+	VBROADCASTSD number8<>+0(SB), Y2
 
 phaseSwollenAVX2next:
 	VMOVUPD      (AX), Y3
@@ -2105,17 +3163,17 @@ phaseSwollenAVX2next:
 	VBROADCASTSD (BX), Y6
 	VBROADCASTSD (SI), Y7
 	VSUBPD       Y7, Y5, Y5
-	VBROADCASTSD number18<>+0(SB), Y7
+	VBROADCASTSD number26<>+0(SB), Y7
 	VMULPD       Y5, Y0, Y5
 	VADDPD       Y5, Y5, Y8
 	VADDPD       Y7, Y8, Y8
 	VSQRTPD      Y8, Y8
-	VBROADCASTSD number19<>+0(SB), Y9
-	VBROADCASTSD number20<>+0(SB), Y10
+	VBROADCASTSD number27<>+0(SB), Y9
+	VBROADCASTSD number28<>+0(SB), Y10
 	VFMADD231PD  Y10, Y5, Y9
 	VMULPD       Y5, Y9, Y9
 	VADDPD       Y8, Y7, Y7
-	VBROADCASTSD number21<>+0(SB), Y10
+	VBROADCASTSD number29<>+0(SB), Y10
 	VFMADD231PD  Y10, Y5, Y7
 	VMULPD       Y8, Y7, Y5
 	VDIVPD       Y5, Y9, Y9
@@ -2127,24 +3185,8 @@ phaseSwollenAVX2next:
 	VSUBPD       Y6, Y7, Y6
 	VPSLLQ       $0x3f, Y5, Y5
 	VMULPD       Y6, Y6, Y7
-	VBROADCASTSD number1<>+0(SB), Y8
-	VBROADCASTSD number2<>+0(SB), Y9
-	VBROADCASTSD number3<>+0(SB), Y10
-	VFMADD213PD  Y10, Y7, Y8
-	VBROADCASTSD number4<>+0(SB), Y10
-	VFMADD213PD  Y10, Y7, Y9
-	VBROADCASTSD number5<>+0(SB), Y10
-	VFMADD213PD  Y10, Y7, Y8
-	VBROADCASTSD number6<>+0(SB), Y10
-	VFMADD213PD  Y10, Y7, Y9
-	VBROADCASTSD number7<>+0(SB), Y10
-	VFMADD213PD  Y10, Y7, Y8
-	VBROADCASTSD number8<>+0(SB), Y10
-	VFMADD213PD  Y10, Y7, Y9
-	VBROADCASTSD number9<>+0(SB), Y10
-	VFMADD213PD  Y10, Y7, Y8
-	VBROADCASTSD number10<>+0(SB), Y10
-	VFMADD213PD  Y10, Y7, Y9
+	VBROADCASTSD number9<>+0(SB), Y8
+	VBROADCASTSD number10<>+0(SB), Y9
 	VBROADCASTSD number11<>+0(SB), Y10
 	VFMADD213PD  Y10, Y7, Y8
 	VBROADCASTSD number12<>+0(SB), Y10
@@ -2160,6 +3202,22 @@ phaseSwollenAVX2next:
 	VBROADCASTSD number17<>+0(SB), Y10
 	VFMADD213PD  Y10, Y7, Y8
 	VBROADCASTSD number18<>+0(SB), Y10
+	VFMADD213PD  Y10, Y7, Y9
+	VBROADCASTSD number19<>+0(SB), Y10
+	VFMADD213PD  Y10, Y7, Y8
+	VBROADCASTSD number20<>+0(SB), Y10
+	VFMADD213PD  Y10, Y7, Y9
+	VBROADCASTSD number21<>+0(SB), Y10
+	VFMADD213PD  Y10, Y7, Y8
+	VBROADCASTSD number22<>+0(SB), Y10
+	VFMADD213PD  Y10, Y7, Y9
+	VBROADCASTSD number23<>+0(SB), Y10
+	VFMADD213PD  Y10, Y7, Y8
+	VBROADCASTSD number24<>+0(SB), Y10
+	VFMADD213PD  Y10, Y7, Y9
+	VBROADCASTSD number25<>+0(SB), Y10
+	VFMADD213PD  Y10, Y7, Y8
+	VBROADCASTSD number26<>+0(SB), Y10
 	VFMADD213PD  Y10, Y7, Y9
 	VMULPD       Y6, Y8, Y6
 	VXORPD       Y5, Y6, Y6
@@ -2177,17 +3235,17 @@ phaseSwollenAVX2next:
 	VBROADCASTSD (BX), Y6
 	VBROADCASTSD (SI), Y7
 	VSUBPD       Y7, Y5, Y5
-	VBROADCASTSD number18<>+0(SB), Y7
+	VBROADCASTSD number26<>+0(SB), Y7
 	VMULPD       Y5, Y0, Y5
 	VADDPD       Y5, Y5, Y8
 	VADDPD       Y7, Y8, Y8
 	VSQRTPD      Y8, Y8
-	VBROADCASTSD number19<>+0(SB), Y9
-	VBROADCASTSD number20<>+0(SB), Y10
+	VBROADCASTSD number27<>+0(SB), Y9
+	VBROADCASTSD number28<>+0(SB), Y10
 	VFMADD231PD  Y10, Y5, Y9
 	VMULPD       Y5, Y9, Y9
 	VADDPD       Y8, Y7, Y7
-	VBROADCASTSD number21<>+0(SB), Y10
+	VBROADCASTSD number29<>+0(SB), Y10
 	VFMADD231PD  Y10, Y5, Y7
 	VMULPD       Y8, Y7, Y5
 	VDIVPD       Y5, Y9, Y9
@@ -2199,24 +3257,8 @@ phaseSwollenAVX2next:
 	VSUBPD       Y6, Y7, Y6
 	VPSLLQ       $0x3f, Y5, Y5
 	VMULPD       Y6, Y6, Y7
-	VBROADCASTSD number1<>+0(SB), Y8
-	VBROADCASTSD number2<>+0(SB), Y9
-	VBROADCASTSD number3<>+0(SB), Y10
-	VFMADD213PD  Y10, Y7, Y8
-	VBROADCASTSD number4<>+0(SB), Y10
-	VFMADD213PD  Y10, Y7, Y9
-	VBROADCASTSD number5<>+0(SB), Y10
-	VFMADD213PD  Y10, Y7, Y8
-	VBROADCASTSD number6<>+0(SB), Y10
-	VFMADD213PD  Y10, Y7, Y9
-	VBROADCASTSD number7<>+0(SB), Y10
-	VFMADD213PD  Y10, Y7, Y8
-	VBROADCASTSD number8<>+0(SB), Y10
-	VFMADD213PD  Y10, Y7, Y9
-	VBROADCASTSD number9<>+0(SB), Y10
-	VFMADD213PD  Y10, Y7, Y8
-	VBROADCASTSD number10<>+0(SB), Y10
-	VFMADD213PD  Y10, Y7, Y9
+	VBROADCASTSD number9<>+0(SB), Y8
+	VBROADCASTSD number10<>+0(SB), Y9
 	VBROADCASTSD number11<>+0(SB), Y10
 	VFMADD213PD  Y10, Y7, Y8
 	VBROADCASTSD number12<>+0(SB), Y10
@@ -2232,6 +3274,22 @@ phaseSwollenAVX2next:
 	VBROADCASTSD number17<>+0(SB), Y10
 	VFMADD213PD  Y10, Y7, Y8
 	VBROADCASTSD number18<>+0(SB), Y10
+	VFMADD213PD  Y10, Y7, Y9
+	VBROADCASTSD number19<>+0(SB), Y10
+	VFMADD213PD  Y10, Y7, Y8
+	VBROADCASTSD number20<>+0(SB), Y10
+	VFMADD213PD  Y10, Y7, Y9
+	VBROADCASTSD number21<>+0(SB), Y10
+	VFMADD213PD  Y10, Y7, Y8
+	VBROADCASTSD number22<>+0(SB), Y10
+	VFMADD213PD  Y10, Y7, Y9
+	VBROADCASTSD number23<>+0(SB), Y10
+	VFMADD213PD  Y10, Y7, Y8
+	VBROADCASTSD number24<>+0(SB), Y10
+	VFMADD213PD  Y10, Y7, Y9
+	VBROADCASTSD number25<>+0(SB), Y10
+	VFMADD213PD  Y10, Y7, Y8
+	VBROADCASTSD number26<>+0(SB), Y10
 	VFMADD213PD  Y10, Y7, Y9
 	VMULPD       Y6, Y8, Y6
 	VXORPD       Y5, Y6, Y6
@@ -2279,6 +3337,43 @@ dampAVX2next:
 	ADDQ         $0x08, DX
 	DECQ         BX
 	JNZ          dampAVX2next
+	VZEROUPPER
+	RET
+
+// func mixAVX2(re *float64, im *float64, matrix *float64, points int)
+// Requires: AVX, FMA3
+TEXT ·mixAVX2(SB), NOSPLIT, $0-32
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ matrix+16(FP), DX
+	MOVQ points+24(FP), BX
+
+mixAVX2next:
+	VBROADCASTSD (DX), Y0
+	VBROADCASTSD 8(DX), Y1
+	VBROADCASTSD 16(DX), Y2
+	VBROADCASTSD 24(DX), Y3
+	VMOVUPD      (AX), Y4
+	VMOVUPD      (CX), Y5
+	VMULPD       Y4, Y0, Y6
+	VFMADD231PD  Y5, Y1, Y6
+	VMOVUPD      Y6, (AX)
+	VMULPD       Y4, Y2, Y4
+	VFMADD231PD  Y5, Y3, Y4
+	VMOVUPD      Y4, (CX)
+	VMOVUPD      32(AX), Y4
+	VMOVUPD      32(CX), Y5
+	VMULPD       Y4, Y0, Y0
+	VFMADD231PD  Y5, Y1, Y0
+	VMOVUPD      Y0, 32(AX)
+	VMULPD       Y4, Y2, Y0
+	VFMADD231PD  Y5, Y3, Y0
+	VMOVUPD      Y0, 32(CX)
+	ADDQ         $0x40, AX
+	ADDQ         $0x40, CX
+	ADDQ         $0x20, DX
+	DECQ         BX
+	JNZ          mixAVX2next
 	VZEROUPPER
 	RET
 
@@ -2424,5 +3519,3090 @@ tileAVX2lower:
 	VMOVUPD      Y5, 416(AX)
 	VMOVUPD      Y6, 448(AX)
 	VMOVUPD      Y7, 480(AX)
+	VZEROUPPER
+	RET
+
+// func forward2SingleAVX512(re *float32, im *float32, twiddle *float32, blocks int, span int)
+// Requires: AVX, AVX512F
+TEXT ·forward2SingleAVX512(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+forward2SingleAVX512block:
+	MOVQ DX, R8
+	MOVQ SI, R9
+
+forward2SingleAVX512next:
+	VMOVUPS           (AX), Z0
+	VMOVUPS           (CX), Z1
+	VMOVUPS           (AX)(DI*1), Z2
+	VMOVUPS           (CX)(DI*1), Z3
+	VSUBPS            Z2, Z0, Z4
+	VSUBPS            Z3, Z1, Z5
+	VADDPS            Z2, Z0, Z0
+	VADDPS            Z3, Z1, Z1
+	VMOVUPS           Z0, (AX)
+	VMOVUPS           Z1, (CX)
+	VMULPS.BCST       (R8), Z4, Z0
+	VMULPS.BCST       4(R8), Z4, Z1
+	VFNMADD231PS.BCST 4(R8), Z5, Z0
+	VFMADD231PS.BCST  (R8), Z5, Z1
+	VMOVUPS           Z0, (AX)(DI*1)
+	VMOVUPS           Z1, (CX)(DI*1)
+	ADDQ              $0x40, AX
+	ADDQ              $0x40, CX
+	ADDQ              $0x00000008, R8
+	DECQ              R9
+	JNZ               forward2SingleAVX512next
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	DECQ              BX
+	JNZ               forward2SingleAVX512block
+	VZEROUPPER
+	RET
+
+// func backward2SingleAVX512(re *float32, im *float32, twiddle *float32, blocks int, span int)
+// Requires: AVX, AVX512F
+TEXT ·backward2SingleAVX512(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+backward2SingleAVX512block:
+	MOVQ DX, R8
+	MOVQ SI, R9
+
+backward2SingleAVX512next:
+	VMOVUPS           (AX), Z0
+	VMOVUPS           (CX), Z1
+	VMOVUPS           (AX)(DI*1), Z2
+	VMOVUPS           (CX)(DI*1), Z3
+	VMULPS.BCST       (R8), Z2, Z4
+	VMULPS.BCST       (R8), Z3, Z5
+	VFMADD231PS.BCST  4(R8), Z3, Z4
+	VFNMADD231PS.BCST 4(R8), Z2, Z5
+	VSUBPS            Z5, Z1, Z2
+	VSUBPS            Z4, Z0, Z3
+	VADDPS            Z5, Z1, Z1
+	VADDPS            Z4, Z0, Z0
+	VMOVUPS           Z0, (AX)
+	VMOVUPS           Z1, (CX)
+	VMOVUPS           Z3, (AX)(DI*1)
+	VMOVUPS           Z2, (CX)(DI*1)
+	ADDQ              $0x40, AX
+	ADDQ              $0x40, CX
+	ADDQ              $0x00000008, R8
+	DECQ              R9
+	JNZ               backward2SingleAVX512next
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	DECQ              BX
+	JNZ               backward2SingleAVX512block
+	VZEROUPPER
+	RET
+
+// func forward3SingleAVX512(re *float32, im *float32, twiddle *float32, blocks int, span int)
+// Requires: AVX, AVX512F
+TEXT ·forward3SingleAVX512(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+forward3SingleAVX512block:
+	MOVQ DX, R8
+	MOVQ SI, R9
+
+forward3SingleAVX512next:
+	VMOVUPS           (AX), Z0
+	VMOVUPS           (CX), Z1
+	VMOVUPS           (AX)(DI*1), Z2
+	VMOVUPS           (CX)(DI*1), Z3
+	VMOVUPS           (AX)(DI*2), Z4
+	VMOVUPS           (CX)(DI*2), Z5
+	VSUBPS            Z4, Z2, Z6
+	VSUBPS            Z5, Z3, Z7
+	VADDPS            Z4, Z2, Z2
+	VADDPS            Z5, Z3, Z3
+	VADDPS            Z2, Z0, Z4
+	VADDPS            Z3, Z1, Z5
+	VFMADD231PS.BCST  number30<>+0(SB), Z2, Z0
+	VFMADD231PS.BCST  number30<>+0(SB), Z3, Z1
+	VMULPS.BCST       number31<>+0(SB), Z6, Z2
+	VMULPS.BCST       number31<>+0(SB), Z7, Z3
+	VADDPS            Z3, Z0, Z6
+	VSUBPS            Z2, Z1, Z7
+	VSUBPS            Z3, Z0, Z0
+	VADDPS            Z2, Z1, Z1
+	VMOVUPS           Z4, (AX)
+	VMOVUPS           Z5, (CX)
+	VMULPS.BCST       (R8), Z6, Z2
+	VMULPS.BCST       4(R8), Z6, Z3
+	VFNMADD231PS.BCST 4(R8), Z7, Z2
+	VFMADD231PS.BCST  (R8), Z7, Z3
+	VMOVUPS           Z2, (AX)(DI*1)
+	VMOVUPS           Z3, (CX)(DI*1)
+	VMULPS.BCST       8(R8), Z0, Z2
+	VMULPS.BCST       12(R8), Z0, Z0
+	VFNMADD231PS.BCST 12(R8), Z1, Z2
+	VFMADD231PS.BCST  8(R8), Z1, Z0
+	VMOVUPS           Z2, (AX)(DI*2)
+	VMOVUPS           Z0, (CX)(DI*2)
+	ADDQ              $0x40, AX
+	ADDQ              $0x40, CX
+	ADDQ              $0x00000010, R8
+	DECQ              R9
+	JNZ               forward3SingleAVX512next
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	DECQ              BX
+	JNZ               forward3SingleAVX512block
+	VZEROUPPER
+	RET
+
+DATA number30<>+0(SB)/4, $(-0.5)
+GLOBL number30<>(SB), RODATA|NOPTR, $4
+
+DATA number31<>+0(SB)/4, $(0.8660254)
+GLOBL number31<>(SB), RODATA|NOPTR, $4
+
+// func backward3SingleAVX512(re *float32, im *float32, twiddle *float32, blocks int, span int)
+// Requires: AVX, AVX512F
+TEXT ·backward3SingleAVX512(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+backward3SingleAVX512block:
+	MOVQ DX, R8
+	MOVQ SI, R9
+
+backward3SingleAVX512next:
+	VMOVUPS           (AX), Z0
+	VMOVUPS           (CX), Z1
+	VMOVUPS           (AX)(DI*1), Z2
+	VMOVUPS           (CX)(DI*1), Z3
+	VMULPS.BCST       (R8), Z2, Z4
+	VMULPS.BCST       (R8), Z3, Z5
+	VFMADD231PS.BCST  4(R8), Z3, Z4
+	VFNMADD231PS.BCST 4(R8), Z2, Z5
+	VMOVUPS           (AX)(DI*2), Z2
+	VMOVUPS           (CX)(DI*2), Z3
+	VMULPS.BCST       8(R8), Z2, Z6
+	VMULPS.BCST       8(R8), Z3, Z7
+	VFMADD231PS.BCST  12(R8), Z3, Z6
+	VFNMADD231PS.BCST 12(R8), Z2, Z7
+	VSUBPS            Z7, Z5, Z2
+	VSUBPS            Z6, Z4, Z3
+	VADDPS            Z7, Z5, Z5
+	VADDPS            Z6, Z4, Z4
+	VADDPS            Z5, Z1, Z6
+	VADDPS            Z4, Z0, Z7
+	VFMADD231PS.BCST  number30<>+0(SB), Z5, Z1
+	VFMADD231PS.BCST  number30<>+0(SB), Z4, Z0
+	VMULPS.BCST       number31<>+0(SB), Z2, Z2
+	VMULPS.BCST       number31<>+0(SB), Z3, Z3
+	VADDPS            Z3, Z1, Z4
+	VSUBPS            Z2, Z0, Z5
+	VSUBPS            Z3, Z1, Z1
+	VADDPS            Z2, Z0, Z0
+	VMOVUPS           Z7, (AX)
+	VMOVUPS           Z6, (CX)
+	VMOVUPS           Z5, (AX)(DI*1)
+	VMOVUPS           Z4, (CX)(DI*1)
+	VMOVUPS           Z0, (AX)(DI*2)
+	VMOVUPS           Z1, (CX)(DI*2)
+	ADDQ              $0x40, AX
+	ADDQ              $0x40, CX
+	ADDQ              $0x00000010, R8
+	DECQ              R9
+	JNZ               backward3SingleAVX512next
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	DECQ              BX
+	JNZ               backward3SingleAVX512block
+	VZEROUPPER
+	RET
+
+// func forward4SingleAVX512(re *float32, im *float32, twiddle *float32, blocks int, span int)
+// Requires: AVX, AVX512F
+TEXT ·forward4SingleAVX512(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+forward4SingleAVX512block:
+	MOVQ DX, R9
+	MOVQ SI, R10
+
+forward4SingleAVX512next:
+	VMOVUPS           (AX), Z0
+	VMOVUPS           (CX), Z1
+	VMOVUPS           (AX)(DI*1), Z2
+	VMOVUPS           (CX)(DI*1), Z3
+	VMOVUPS           (AX)(DI*2), Z4
+	VMOVUPS           (CX)(DI*2), Z5
+	VMOVUPS           (AX)(R8*1), Z6
+	VMOVUPS           (CX)(R8*1), Z7
+	VSUBPS            Z4, Z0, Z8
+	VSUBPS            Z5, Z1, Z9
+	VADDPS            Z4, Z0, Z0
+	VADDPS            Z5, Z1, Z1
+	VSUBPS            Z6, Z2, Z4
+	VSUBPS            Z7, Z3, Z5
+	VADDPS            Z6, Z2, Z2
+	VADDPS            Z7, Z3, Z3
+	VSUBPS            Z2, Z0, Z6
+	VSUBPS            Z3, Z1, Z7
+	VADDPS            Z2, Z0, Z0
+	VADDPS            Z3, Z1, Z1
+	VADDPS            Z5, Z8, Z2
+	VSUBPS            Z4, Z9, Z3
+	VSUBPS            Z5, Z8, Z5
+	VADDPS            Z4, Z9, Z4
+	VMOVUPS           Z0, (AX)
+	VMOVUPS           Z1, (CX)
+	VMULPS.BCST       (R9), Z2, Z0
+	VMULPS.BCST       4(R9), Z2, Z1
+	VFNMADD231PS.BCST 4(R9), Z3, Z0
+	VFMADD231PS.BCST  (R9), Z3, Z1
+	VMOVUPS           Z0, (AX)(DI*1)
+	VMOVUPS           Z1, (CX)(DI*1)
+	VMULPS.BCST       8(R9), Z6, Z0
+	VMULPS.BCST       12(R9), Z6, Z1
+	VFNMADD231PS.BCST 12(R9), Z7, Z0
+	VFMADD231PS.BCST  8(R9), Z7, Z1
+	VMOVUPS           Z0, (AX)(DI*2)
+	VMOVUPS           Z1, (CX)(DI*2)
+	VMULPS.BCST       16(R9), Z5, Z0
+	VMULPS.BCST       20(R9), Z5, Z1
+	VFNMADD231PS.BCST 20(R9), Z4, Z0
+	VFMADD231PS.BCST  16(R9), Z4, Z1
+	VMOVUPS           Z0, (AX)(R8*1)
+	VMOVUPS           Z1, (CX)(R8*1)
+	ADDQ              $0x40, AX
+	ADDQ              $0x40, CX
+	ADDQ              $0x00000018, R9
+	DECQ              R10
+	JNZ               forward4SingleAVX512next
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	DECQ              BX
+	JNZ               forward4SingleAVX512block
+	VZEROUPPER
+	RET
+
+// func backward4SingleAVX512(re *float32, im *float32, twiddle *float32, blocks int, span int)
+// Requires: AVX, AVX512F
+TEXT ·backward4SingleAVX512(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+backward4SingleAVX512block:
+	MOVQ DX, R9
+	MOVQ SI, R10
+
+backward4SingleAVX512next:
+	VMOVUPS           (AX), Z0
+	VMOVUPS           (CX), Z1
+	VMOVUPS           (AX)(DI*1), Z2
+	VMOVUPS           (CX)(DI*1), Z3
+	VMULPS.BCST       (R9), Z2, Z4
+	VMULPS.BCST       (R9), Z3, Z5
+	VFMADD231PS.BCST  4(R9), Z3, Z4
+	VFNMADD231PS.BCST 4(R9), Z2, Z5
+	VMOVUPS           (AX)(DI*2), Z2
+	VMOVUPS           (CX)(DI*2), Z3
+	VMULPS.BCST       8(R9), Z2, Z6
+	VMULPS.BCST       8(R9), Z3, Z7
+	VFMADD231PS.BCST  12(R9), Z3, Z6
+	VFNMADD231PS.BCST 12(R9), Z2, Z7
+	VMOVUPS           (AX)(R8*1), Z2
+	VMOVUPS           (CX)(R8*1), Z3
+	VMULPS.BCST       16(R9), Z2, Z8
+	VMULPS.BCST       16(R9), Z3, Z9
+	VFMADD231PS.BCST  20(R9), Z3, Z8
+	VFNMADD231PS.BCST 20(R9), Z2, Z9
+	VSUBPS            Z7, Z1, Z2
+	VSUBPS            Z6, Z0, Z3
+	VADDPS            Z7, Z1, Z1
+	VADDPS            Z6, Z0, Z0
+	VSUBPS            Z9, Z5, Z6
+	VSUBPS            Z8, Z4, Z7
+	VADDPS            Z9, Z5, Z5
+	VADDPS            Z8, Z4, Z4
+	VSUBPS            Z5, Z1, Z8
+	VSUBPS            Z4, Z0, Z9
+	VADDPS            Z5, Z1, Z1
+	VADDPS            Z4, Z0, Z0
+	VADDPS            Z7, Z2, Z4
+	VSUBPS            Z6, Z3, Z5
+	VSUBPS            Z7, Z2, Z2
+	VADDPS            Z6, Z3, Z3
+	VMOVUPS           Z0, (AX)
+	VMOVUPS           Z1, (CX)
+	VMOVUPS           Z5, (AX)(DI*1)
+	VMOVUPS           Z4, (CX)(DI*1)
+	VMOVUPS           Z9, (AX)(DI*2)
+	VMOVUPS           Z8, (CX)(DI*2)
+	VMOVUPS           Z3, (AX)(R8*1)
+	VMOVUPS           Z2, (CX)(R8*1)
+	ADDQ              $0x40, AX
+	ADDQ              $0x40, CX
+	ADDQ              $0x00000018, R9
+	DECQ              R10
+	JNZ               backward4SingleAVX512next
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	DECQ              BX
+	JNZ               backward4SingleAVX512block
+	VZEROUPPER
+	RET
+
+// func forward5SingleAVX512(re *float32, im *float32, twiddle *float32, blocks int, span int)
+// Requires: AVX, AVX512F
+TEXT ·forward5SingleAVX512(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+forward5SingleAVX512block:
+	MOVQ DX, R11
+	MOVQ SI, R12
+
+forward5SingleAVX512next:
+	LEAQ              (AX)(DI*4), R9
+	LEAQ              (CX)(DI*4), R10
+	VMOVUPS           (AX), Z0
+	VMOVUPS           (CX), Z1
+	VMOVUPS           (AX)(DI*1), Z2
+	VMOVUPS           (CX)(DI*1), Z3
+	VMOVUPS           (AX)(DI*2), Z4
+	VMOVUPS           (CX)(DI*2), Z5
+	VMOVUPS           (AX)(R8*1), Z6
+	VMOVUPS           (CX)(R8*1), Z7
+	VMOVUPS           (R9), Z8
+	VMOVUPS           (R10), Z9
+	VSUBPS            Z8, Z2, Z10
+	VSUBPS            Z9, Z3, Z11
+	VADDPS            Z8, Z2, Z2
+	VADDPS            Z9, Z3, Z3
+	VSUBPS            Z6, Z4, Z8
+	VSUBPS            Z7, Z5, Z9
+	VADDPS            Z6, Z4, Z4
+	VADDPS            Z7, Z5, Z5
+	VADDPS            Z2, Z0, Z6
+	VADDPS            Z3, Z1, Z7
+	VADDPS            Z4, Z6, Z6
+	VADDPS            Z5, Z7, Z7
+	VMOVAPS           Z0, Z12
+	VMOVAPS           Z1, Z13
+	VFMADD231PS.BCST  number32<>+0(SB), Z2, Z12
+	VFMADD231PS.BCST  number32<>+0(SB), Z3, Z13
+	VFMADD231PS.BCST  number33<>+0(SB), Z4, Z12
+	VFMADD231PS.BCST  number33<>+0(SB), Z5, Z13
+	VFMADD231PS.BCST  number33<>+0(SB), Z2, Z0
+	VFMADD231PS.BCST  number33<>+0(SB), Z3, Z1
+	VFMADD231PS.BCST  number32<>+0(SB), Z4, Z0
+	VFMADD231PS.BCST  number32<>+0(SB), Z5, Z1
+	VMULPS.BCST       number34<>+0(SB), Z10, Z2
+	VMULPS.BCST       number34<>+0(SB), Z11, Z3
+	VFMADD231PS.BCST  number35<>+0(SB), Z8, Z2
+	VFMADD231PS.BCST  number35<>+0(SB), Z9, Z3
+	VMULPS.BCST       number35<>+0(SB), Z10, Z4
+	VMULPS.BCST       number35<>+0(SB), Z11, Z5
+	VFMADD231PS.BCST  number36<>+0(SB), Z8, Z4
+	VFMADD231PS.BCST  number36<>+0(SB), Z9, Z5
+	VADDPS            Z3, Z12, Z8
+	VSUBPS            Z2, Z13, Z9
+	VADDPS            Z5, Z0, Z10
+	VSUBPS            Z4, Z1, Z11
+	VSUBPS            Z5, Z0, Z0
+	VADDPS            Z4, Z1, Z1
+	VSUBPS            Z3, Z12, Z3
+	VADDPS            Z2, Z13, Z2
+	VMOVUPS           Z6, (AX)
+	VMOVUPS           Z7, (CX)
+	VMULPS.BCST       (R11), Z8, Z4
+	VMULPS.BCST       4(R11), Z8, Z5
+	VFNMADD231PS.BCST 4(R11), Z9, Z4
+	VFMADD231PS.BCST  (R11), Z9, Z5
+	VMOVUPS           Z4, (AX)(DI*1)
+	VMOVUPS           Z5, (CX)(DI*1)
+	VMULPS.BCST       8(R11), Z10, Z4
+	VMULPS.BCST       12(R11), Z10, Z5
+	VFNMADD231PS.BCST 12(R11), Z11, Z4
+	VFMADD231PS.BCST  8(R11), Z11, Z5
+	VMOVUPS           Z4, (AX)(DI*2)
+	VMOVUPS           Z5, (CX)(DI*2)
+	VMULPS.BCST       16(R11), Z0, Z4
+	VMULPS.BCST       20(R11), Z0, Z0
+	VFNMADD231PS.BCST 20(R11), Z1, Z4
+	VFMADD231PS.BCST  16(R11), Z1, Z0
+	VMOVUPS           Z4, (AX)(R8*1)
+	VMOVUPS           Z0, (CX)(R8*1)
+	VMULPS.BCST       24(R11), Z3, Z0
+	VMULPS.BCST       28(R11), Z3, Z1
+	VFNMADD231PS.BCST 28(R11), Z2, Z0
+	VFMADD231PS.BCST  24(R11), Z2, Z1
+	VMOVUPS           Z0, (R9)
+	VMOVUPS           Z1, (R10)
+	ADDQ              $0x40, AX
+	ADDQ              $0x40, CX
+	ADDQ              $0x00000020, R11
+	DECQ              R12
+	JNZ               forward5SingleAVX512next
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	DECQ              BX
+	JNZ               forward5SingleAVX512block
+	VZEROUPPER
+	RET
+
+DATA number32<>+0(SB)/4, $(0.309017)
+GLOBL number32<>(SB), RODATA|NOPTR, $4
+
+DATA number33<>+0(SB)/4, $(-0.809017)
+GLOBL number33<>(SB), RODATA|NOPTR, $4
+
+DATA number34<>+0(SB)/4, $(0.95105654)
+GLOBL number34<>(SB), RODATA|NOPTR, $4
+
+DATA number35<>+0(SB)/4, $(0.58778524)
+GLOBL number35<>(SB), RODATA|NOPTR, $4
+
+DATA number36<>+0(SB)/4, $(-0.95105654)
+GLOBL number36<>(SB), RODATA|NOPTR, $4
+
+// func backward5SingleAVX512(re *float32, im *float32, twiddle *float32, blocks int, span int)
+// Requires: AVX, AVX512F
+TEXT ·backward5SingleAVX512(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+backward5SingleAVX512block:
+	MOVQ DX, R11
+	MOVQ SI, R12
+
+backward5SingleAVX512next:
+	LEAQ              (AX)(DI*4), R9
+	LEAQ              (CX)(DI*4), R10
+	VMOVUPS           (AX), Z0
+	VMOVUPS           (CX), Z1
+	VMOVUPS           (AX)(DI*1), Z2
+	VMOVUPS           (CX)(DI*1), Z3
+	VMULPS.BCST       (R11), Z2, Z4
+	VMULPS.BCST       (R11), Z3, Z5
+	VFMADD231PS.BCST  4(R11), Z3, Z4
+	VFNMADD231PS.BCST 4(R11), Z2, Z5
+	VMOVUPS           (AX)(DI*2), Z2
+	VMOVUPS           (CX)(DI*2), Z3
+	VMULPS.BCST       8(R11), Z2, Z6
+	VMULPS.BCST       8(R11), Z3, Z7
+	VFMADD231PS.BCST  12(R11), Z3, Z6
+	VFNMADD231PS.BCST 12(R11), Z2, Z7
+	VMOVUPS           (AX)(R8*1), Z2
+	VMOVUPS           (CX)(R8*1), Z3
+	VMULPS.BCST       16(R11), Z2, Z8
+	VMULPS.BCST       16(R11), Z3, Z9
+	VFMADD231PS.BCST  20(R11), Z3, Z8
+	VFNMADD231PS.BCST 20(R11), Z2, Z9
+	VMOVUPS           (R9), Z2
+	VMOVUPS           (R10), Z3
+	VMULPS.BCST       24(R11), Z2, Z10
+	VMULPS.BCST       24(R11), Z3, Z11
+	VFMADD231PS.BCST  28(R11), Z3, Z10
+	VFNMADD231PS.BCST 28(R11), Z2, Z11
+	VSUBPS            Z11, Z5, Z2
+	VSUBPS            Z10, Z4, Z3
+	VADDPS            Z11, Z5, Z5
+	VADDPS            Z10, Z4, Z4
+	VSUBPS            Z9, Z7, Z10
+	VSUBPS            Z8, Z6, Z11
+	VADDPS            Z9, Z7, Z7
+	VADDPS            Z8, Z6, Z6
+	VADDPS            Z5, Z1, Z8
+	VADDPS            Z4, Z0, Z9
+	VADDPS            Z7, Z8, Z8
+	VADDPS            Z6, Z9, Z9
+	VMOVAPS           Z1, Z12
+	VMOVAPS           Z0, Z13
+	VFMADD231PS.BCST  number32<>+0(SB), Z5, Z12
+	VFMADD231PS.BCST  number32<>+0(SB), Z4, Z13
+	VFMADD231PS.BCST  number33<>+0(SB), Z7, Z12
+	VFMADD231PS.BCST  number33<>+0(SB), Z6, Z13
+	VFMADD231PS.BCST  number33<>+0(SB), Z5, Z1
+	VFMADD231PS.BCST  number33<>+0(SB), Z4, Z0
+	VFMADD231PS.BCST  number32<>+0(SB), Z7, Z1
+	VFMADD231PS.BCST  number32<>+0(SB), Z6, Z0
+	VMULPS.BCST       number34<>+0(SB), Z2, Z4
+	VMULPS.BCST       number34<>+0(SB), Z3, Z5
+	VFMADD231PS.BCST  number35<>+0(SB), Z10, Z4
+	VFMADD231PS.BCST  number35<>+0(SB), Z11, Z5
+	VMULPS.BCST       number35<>+0(SB), Z2, Z2
+	VMULPS.BCST       number35<>+0(SB), Z3, Z3
+	VFMADD231PS.BCST  number36<>+0(SB), Z10, Z2
+	VFMADD231PS.BCST  number36<>+0(SB), Z11, Z3
+	VADDPS            Z5, Z12, Z6
+	VSUBPS            Z4, Z13, Z7
+	VADDPS            Z3, Z1, Z10
+	VSUBPS            Z2, Z0, Z11
+	VSUBPS            Z3, Z1, Z1
+	VADDPS            Z2, Z0, Z0
+	VSUBPS            Z5, Z12, Z2
+	VADDPS            Z4, Z13, Z3
+	VMOVUPS           Z9, (AX)
+	VMOVUPS           Z8, (CX)
+	VMOVUPS           Z7, (AX)(DI*1)
+	VMOVUPS           Z6, (CX)(DI*1)
+	VMOVUPS           Z11, (AX)(DI*2)
+	VMOVUPS           Z10, (CX)(DI*2)
+	VMOVUPS           Z0, (AX)(R8*1)
+	VMOVUPS           Z1, (CX)(R8*1)
+	VMOVUPS           Z3, (R9)
+	VMOVUPS           Z2, (R10)
+	ADDQ              $0x40, AX
+	ADDQ              $0x40, CX
+	ADDQ              $0x00000020, R11
+	DECQ              R12
+	JNZ               backward5SingleAVX512next
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	DECQ              BX
+	JNZ               backward5SingleAVX512block
+	VZEROUPPER
+	RET
+
+// func forward8SingleAVX512(re *float32, im *float32, twiddle *float32, blocks int, span int)
+// Requires: AVX, AVX512F
+TEXT ·forward8SingleAVX512(SB), NOSPLIT, $0-40
+	MOVQ         re+0(FP), AX
+	MOVQ         im+8(FP), CX
+	MOVQ         twiddle+16(FP), DX
+	MOVQ         blocks+24(FP), BX
+	MOVQ         span+32(FP), SI
+	MOVQ         SI, DI
+	SHLQ         $0x06, DI
+	LEAQ         (DI)(DI*2), R8
+	VBROADCASTSS number37<>+0(SB), Z0
+
+forward8SingleAVX512block:
+	MOVQ DX, R11
+	MOVQ SI, R12
+
+forward8SingleAVX512next:
+	LEAQ              (AX)(DI*4), R9
+	LEAQ              (CX)(DI*4), R10
+	VMOVUPS           (AX), Z1
+	VMOVUPS           (CX), Z2
+	VMOVUPS           (AX)(DI*1), Z3
+	VMOVUPS           (CX)(DI*1), Z4
+	VMOVUPS           (AX)(DI*2), Z5
+	VMOVUPS           (CX)(DI*2), Z6
+	VMOVUPS           (AX)(R8*1), Z7
+	VMOVUPS           (CX)(R8*1), Z8
+	VMOVUPS           (R9), Z9
+	VMOVUPS           (R10), Z10
+	VMOVUPS           (R9)(DI*1), Z11
+	VMOVUPS           (R10)(DI*1), Z12
+	VMOVUPS           (R9)(DI*2), Z13
+	VMOVUPS           (R10)(DI*2), Z14
+	VMOVUPS           (R9)(R8*1), Z15
+	VMOVUPS           (R10)(R8*1), Z16
+	VSUBPS            Z9, Z1, Z17
+	VSUBPS            Z10, Z2, Z18
+	VADDPS            Z9, Z1, Z1
+	VADDPS            Z10, Z2, Z2
+	VSUBPS            Z11, Z3, Z9
+	VSUBPS            Z12, Z4, Z10
+	VADDPS            Z11, Z3, Z3
+	VADDPS            Z12, Z4, Z4
+	VSUBPS            Z13, Z5, Z11
+	VSUBPS            Z14, Z6, Z12
+	VADDPS            Z13, Z5, Z5
+	VADDPS            Z14, Z6, Z6
+	VSUBPS            Z15, Z7, Z13
+	VSUBPS            Z16, Z8, Z14
+	VADDPS            Z15, Z7, Z7
+	VADDPS            Z16, Z8, Z8
+	VSUBPS            Z5, Z1, Z15
+	VSUBPS            Z6, Z2, Z16
+	VADDPS            Z5, Z1, Z1
+	VADDPS            Z6, Z2, Z2
+	VSUBPS            Z7, Z3, Z5
+	VSUBPS            Z8, Z4, Z6
+	VADDPS            Z7, Z3, Z3
+	VADDPS            Z8, Z4, Z4
+	VSUBPS            Z3, Z1, Z7
+	VSUBPS            Z4, Z2, Z8
+	VADDPS            Z3, Z1, Z1
+	VADDPS            Z4, Z2, Z2
+	VADDPS            Z6, Z15, Z3
+	VSUBPS            Z5, Z16, Z4
+	VSUBPS            Z6, Z15, Z6
+	VADDPS            Z5, Z16, Z5
+	VADDPS            Z12, Z17, Z15
+	VSUBPS            Z11, Z18, Z16
+	VSUBPS            Z12, Z17, Z12
+	VADDPS            Z11, Z18, Z11
+	VADDPS            Z10, Z9, Z17
+	VSUBPS            Z9, Z10, Z9
+	VSUBPS            Z13, Z14, Z10
+	VADDPS            Z14, Z13, Z13
+	VADDPS            Z10, Z17, Z14
+	VSUBPS            Z13, Z9, Z18
+	VSUBPS            Z10, Z17, Z10
+	VADDPS            Z13, Z9, Z9
+	VMOVAPS           Z15, Z13
+	VFNMADD231PS      Z0, Z14, Z13
+	VMOVAPS           Z16, Z17
+	VFNMADD231PS      Z0, Z18, Z17
+	VFMADD231PS       Z0, Z14, Z15
+	VFMADD231PS       Z0, Z18, Z16
+	VMOVAPS           Z12, Z14
+	VFNMADD231PS      Z0, Z9, Z14
+	VMOVAPS           Z11, Z18
+	VFMADD231PS       Z0, Z10, Z18
+	VFMADD231PS       Z0, Z9, Z12
+	VFNMADD231PS      Z0, Z10, Z11
+	VMOVUPS           Z1, (AX)
+	VMOVUPS           Z2, (CX)
+	VMULPS.BCST       (R11), Z15, Z1
+	VMULPS.BCST       4(R11), Z15, Z2
+	VFNMADD231PS.BCST 4(R11), Z16, Z1
+	VFMADD231PS.BCST  (R11), Z16, Z2
+	VMOVUPS           Z1, (AX)(DI*1)
+	VMOVUPS           Z2, (CX)(DI*1)
+	VMULPS.BCST       8(R11), Z3, Z1
+	VMULPS.BCST       12(R11), Z3, Z2
+	VFNMADD231PS.BCST 12(R11), Z4, Z1
+	VFMADD231PS.BCST  8(R11), Z4, Z2
+	VMOVUPS           Z1, (AX)(DI*2)
+	VMOVUPS           Z2, (CX)(DI*2)
+	VMULPS.BCST       16(R11), Z12, Z1
+	VMULPS.BCST       20(R11), Z12, Z2
+	VFNMADD231PS.BCST 20(R11), Z11, Z1
+	VFMADD231PS.BCST  16(R11), Z11, Z2
+	VMOVUPS           Z1, (AX)(R8*1)
+	VMOVUPS           Z2, (CX)(R8*1)
+	VMULPS.BCST       24(R11), Z7, Z1
+	VMULPS.BCST       28(R11), Z7, Z2
+	VFNMADD231PS.BCST 28(R11), Z8, Z1
+	VFMADD231PS.BCST  24(R11), Z8, Z2
+	VMOVUPS           Z1, (R9)
+	VMOVUPS           Z2, (R10)
+	VMULPS.BCST       32(R11), Z13, Z1
+	VMULPS.BCST       36(R11), Z13, Z2
+	VFNMADD231PS.BCST 36(R11), Z17, Z1
+	VFMADD231PS.BCST  32(R11), Z17, Z2
+	VMOVUPS           Z1, (R9)(DI*1)
+	VMOVUPS           Z2, (R10)(DI*1)
+	VMULPS.BCST       40(R11), Z6, Z1
+	VMULPS.BCST       44(R11), Z6, Z2
+	VFNMADD231PS.BCST 44(R11), Z5, Z1
+	VFMADD231PS.BCST  40(R11), Z5, Z2
+	VMOVUPS           Z1, (R9)(DI*2)
+	VMOVUPS           Z2, (R10)(DI*2)
+	VMULPS.BCST       48(R11), Z14, Z1
+	VMULPS.BCST       52(R11), Z14, Z2
+	VFNMADD231PS.BCST 52(R11), Z18, Z1
+	VFMADD231PS.BCST  48(R11), Z18, Z2
+	VMOVUPS           Z1, (R9)(R8*1)
+	VMOVUPS           Z2, (R10)(R8*1)
+	ADDQ              $0x40, AX
+	ADDQ              $0x40, CX
+	ADDQ              $0x00000038, R11
+	DECQ              R12
+	JNZ               forward8SingleAVX512next
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	DECQ              BX
+	JNZ               forward8SingleAVX512block
+	VZEROUPPER
+	RET
+
+DATA number37<>+0(SB)/4, $(0.70710677)
+GLOBL number37<>(SB), RODATA|NOPTR, $4
+
+// func backward8SingleAVX512(re *float32, im *float32, twiddle *float32, blocks int, span int)
+// Requires: AVX, AVX512F
+TEXT ·backward8SingleAVX512(SB), NOSPLIT, $0-40
+	MOVQ         re+0(FP), AX
+	MOVQ         im+8(FP), CX
+	MOVQ         twiddle+16(FP), DX
+	MOVQ         blocks+24(FP), BX
+	MOVQ         span+32(FP), SI
+	MOVQ         SI, DI
+	SHLQ         $0x06, DI
+	LEAQ         (DI)(DI*2), R8
+	VBROADCASTSS number37<>+0(SB), Z0
+
+backward8SingleAVX512block:
+	MOVQ DX, R11
+	MOVQ SI, R12
+
+backward8SingleAVX512next:
+	LEAQ              (AX)(DI*4), R9
+	LEAQ              (CX)(DI*4), R10
+	VMOVUPS           (AX), Z1
+	VMOVUPS           (CX), Z2
+	VMOVUPS           (AX)(DI*1), Z3
+	VMOVUPS           (CX)(DI*1), Z4
+	VMULPS.BCST       (R11), Z3, Z5
+	VMULPS.BCST       (R11), Z4, Z6
+	VFMADD231PS.BCST  4(R11), Z4, Z5
+	VFNMADD231PS.BCST 4(R11), Z3, Z6
+	VMOVUPS           (AX)(DI*2), Z3
+	VMOVUPS           (CX)(DI*2), Z4
+	VMULPS.BCST       8(R11), Z3, Z7
+	VMULPS.BCST       8(R11), Z4, Z8
+	VFMADD231PS.BCST  12(R11), Z4, Z7
+	VFNMADD231PS.BCST 12(R11), Z3, Z8
+	VMOVUPS           (AX)(R8*1), Z3
+	VMOVUPS           (CX)(R8*1), Z4
+	VMULPS.BCST       16(R11), Z3, Z9
+	VMULPS.BCST       16(R11), Z4, Z10
+	VFMADD231PS.BCST  20(R11), Z4, Z9
+	VFNMADD231PS.BCST 20(R11), Z3, Z10
+	VMOVUPS           (R9), Z3
+	VMOVUPS           (R10), Z4
+	VMULPS.BCST       24(R11), Z3, Z11
+	VMULPS.BCST       24(R11), Z4, Z12
+	VFMADD231PS.BCST  28(R11), Z4, Z11
+	VFNMADD231PS.BCST 28(R11), Z3, Z12
+	VMOVUPS           (R9)(DI*1), Z3
+	VMOVUPS           (R10)(DI*1), Z4
+	VMULPS.BCST       32(R11), Z3, Z13
+	VMULPS.BCST       32(R11), Z4, Z14
+	VFMADD231PS.BCST  36(R11), Z4, Z13
+	VFNMADD231PS.BCST 36(R11), Z3, Z14
+	VMOVUPS           (R9)(DI*2), Z3
+	VMOVUPS           (R10)(DI*2), Z4
+	VMULPS.BCST       40(R11), Z3, Z15
+	VMULPS.BCST       40(R11), Z4, Z16
+	VFMADD231PS.BCST  44(R11), Z4, Z15
+	VFNMADD231PS.BCST 44(R11), Z3, Z16
+	VMOVUPS           (R9)(R8*1), Z3
+	VMOVUPS           (R10)(R8*1), Z4
+	VMULPS.BCST       48(R11), Z3, Z17
+	VMULPS.BCST       48(R11), Z4, Z18
+	VFMADD231PS.BCST  52(R11), Z4, Z17
+	VFNMADD231PS.BCST 52(R11), Z3, Z18
+	VSUBPS            Z12, Z2, Z3
+	VSUBPS            Z11, Z1, Z4
+	VADDPS            Z12, Z2, Z2
+	VADDPS            Z11, Z1, Z1
+	VSUBPS            Z14, Z6, Z11
+	VSUBPS            Z13, Z5, Z12
+	VADDPS            Z14, Z6, Z6
+	VADDPS            Z13, Z5, Z5
+	VSUBPS            Z16, Z8, Z13
+	VSUBPS            Z15, Z7, Z14
+	VADDPS            Z16, Z8, Z8
+	VADDPS            Z15, Z7, Z7
+	VSUBPS            Z18, Z10, Z15
+	VSUBPS            Z17, Z9, Z16
+	VADDPS            Z18, Z10, Z10
+	VADDPS            Z17, Z9, Z9
+	VSUBPS            Z8, Z2, Z17
+	VSUBPS            Z7, Z1, Z18
+	VADDPS            Z8, Z2, Z2
+	VADDPS            Z7, Z1, Z1
+	VSUBPS            Z10, Z6, Z7
+	VSUBPS            Z9, Z5, Z8
+	VADDPS            Z10, Z6, Z6
+	VADDPS            Z9, Z5, Z5
+	VSUBPS            Z6, Z2, Z9
+	VSUBPS            Z5, Z1, Z10
+	VADDPS            Z6, Z2, Z2
+	VADDPS            Z5, Z1, Z1
+	VADDPS            Z8, Z17, Z5
+	VSUBPS            Z7, Z18, Z6
+	VSUBPS            Z8, Z17, Z8
+	VADDPS            Z7, Z18, Z7
+	VADDPS            Z14, Z3, Z17
+	VSUBPS            Z13, Z4, Z18
+	VSUBPS            Z14, Z3, Z3
+	VADDPS            Z13, Z4, Z4
+	VADDPS            Z12, Z11, Z13
+	VSUBPS            Z11, Z12, Z11
+	VSUBPS            Z15, Z16, Z12
+	VADDPS            Z16, Z15, Z14
+	VADDPS            Z12, Z13, Z15
+	VSUBPS            Z14, Z11, Z16
+	VSUBPS            Z12, Z13, Z12
+	VADDPS            Z14, Z11, Z11
+	VMOVAPS           Z17, Z13
+	VFNMADD231PS      Z0, Z15, Z13
+	VMOVAPS           Z18, Z14
+	VFNMADD231PS      Z0, Z16, Z14
+	VFMADD231PS       Z0, Z15, Z17
+	VFMADD231PS       Z0, Z16, Z18
+	VMOVAPS           Z3, Z15
+	VFNMADD231PS      Z0, Z11, Z15
+	VMOVAPS           Z4, Z16
+	VFMADD231PS       Z0, Z12, Z16
+	VFMADD231PS       Z0, Z11, Z3
+	VFNMADD231PS      Z0, Z12, Z4
+	VMOVUPS           Z1, (AX)
+	VMOVUPS           Z2, (CX)
+	VMOVUPS           Z18, (AX)(DI*1)
+	VMOVUPS           Z17, (CX)(DI*1)
+	VMOVUPS           Z6, (AX)(DI*2)
+	VMOVUPS           Z5, (CX)(DI*2)
+	VMOVUPS           Z4, (AX)(R8*1)
+	VMOVUPS           Z3, (CX)(R8*1)
+	VMOVUPS           Z10, (R9)
+	VMOVUPS           Z9, (R10)
+	VMOVUPS           Z14, (R9)(DI*1)
+	VMOVUPS           Z13, (R10)(DI*1)
+	VMOVUPS           Z7, (R9)(DI*2)
+	VMOVUPS           Z8, (R10)(DI*2)
+	VMOVUPS           Z16, (R9)(R8*1)
+	VMOVUPS           Z15, (R10)(R8*1)
+	ADDQ              $0x40, AX
+	ADDQ              $0x40, CX
+	ADDQ              $0x00000038, R11
+	DECQ              R12
+	JNZ               backward8SingleAVX512next
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	ADDQ              DI, AX
+	ADDQ              DI, CX
+	DECQ              BX
+	JNZ               backward8SingleAVX512block
+	VZEROUPPER
+	RET
+
+// func middle4SingleAVX512(re *float32, im *float32, kinRe *float32, kinIm *float32, groups int)
+// Requires: AVX, AVX512F
+TEXT ·middle4SingleAVX512(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ kinRe+16(FP), DX
+	MOVQ kinIm+24(FP), BX
+	MOVQ groups+32(FP), SI
+
+middle4SingleAVX512next:
+	VMOVUPS           (AX), Z0
+	VMOVUPS           (CX), Z1
+	VMOVUPS           64(AX), Z2
+	VMOVUPS           64(CX), Z3
+	VMOVUPS           128(AX), Z4
+	VMOVUPS           128(CX), Z5
+	VMOVUPS           192(AX), Z6
+	VMOVUPS           192(CX), Z7
+	VSUBPS            Z4, Z0, Z8
+	VSUBPS            Z5, Z1, Z9
+	VADDPS            Z4, Z0, Z0
+	VADDPS            Z5, Z1, Z1
+	VSUBPS            Z6, Z2, Z4
+	VSUBPS            Z7, Z3, Z5
+	VADDPS            Z6, Z2, Z2
+	VADDPS            Z7, Z3, Z3
+	VSUBPS            Z2, Z0, Z6
+	VSUBPS            Z3, Z1, Z7
+	VADDPS            Z2, Z0, Z0
+	VADDPS            Z3, Z1, Z1
+	VADDPS            Z5, Z8, Z2
+	VSUBPS            Z4, Z9, Z3
+	VSUBPS            Z5, Z8, Z5
+	VADDPS            Z4, Z9, Z4
+	VMULPS.BCST       (DX), Z0, Z8
+	VMULPS.BCST       (BX), Z0, Z0
+	VFNMADD231PS.BCST (BX), Z1, Z8
+	VFMADD231PS.BCST  (DX), Z1, Z0
+	VMULPS.BCST       4(DX), Z2, Z1
+	VMULPS.BCST       4(BX), Z2, Z2
+	VFNMADD231PS.BCST 4(BX), Z3, Z1
+	VFMADD231PS.BCST  4(DX), Z3, Z2
+	VMULPS.BCST       8(DX), Z6, Z3
+	VMULPS.BCST       8(BX), Z6, Z6
+	VFNMADD231PS.BCST 8(BX), Z7, Z3
+	VFMADD231PS.BCST  8(DX), Z7, Z6
+	VMULPS.BCST       12(DX), Z5, Z7
+	VMULPS.BCST       12(BX), Z5, Z5
+	VFNMADD231PS.BCST 12(BX), Z4, Z7
+	VFMADD231PS.BCST  12(DX), Z4, Z5
+	VSUBPS            Z6, Z0, Z4
+	VSUBPS            Z3, Z8, Z9
+	VADDPS            Z6, Z0, Z0
+	VADDPS            Z3, Z8, Z3
+	VSUBPS            Z5, Z2, Z6
+	VSUBPS            Z7, Z1, Z8
+	VADDPS            Z5, Z2, Z2
+	VADDPS            Z7, Z1, Z1
+	VSUBPS            Z2, Z0, Z5
+	VSUBPS            Z1, Z3, Z7
+	VADDPS            Z2, Z0, Z0
+	VADDPS            Z1, Z3, Z1
+	VADDPS            Z8, Z4, Z2
+	VSUBPS            Z6, Z9, Z3
+	VSUBPS            Z8, Z4, Z4
+	VADDPS            Z6, Z9, Z6
+	VMOVUPS           Z1, (AX)
+	VMOVUPS           Z0, (CX)
+	VMOVUPS           Z3, 64(AX)
+	VMOVUPS           Z2, 64(CX)
+	VMOVUPS           Z7, 128(AX)
+	VMOVUPS           Z5, 128(CX)
+	VMOVUPS           Z6, 192(AX)
+	VMOVUPS           Z4, 192(CX)
+	ADDQ              $0x00000100, AX
+	ADDQ              $0x00000100, CX
+	ADDQ              $0x10, DX
+	ADDQ              $0x10, BX
+	DECQ              SI
+	JNZ               middle4SingleAVX512next
+	VZEROUPPER
+	RET
+
+// func middle8SingleAVX512(re *float32, im *float32, kinRe *float32, kinIm *float32, groups int)
+// Requires: AVX, AVX512F
+TEXT ·middle8SingleAVX512(SB), NOSPLIT, $0-40
+	MOVQ         re+0(FP), AX
+	MOVQ         im+8(FP), CX
+	MOVQ         kinRe+16(FP), DX
+	MOVQ         kinIm+24(FP), BX
+	MOVQ         groups+32(FP), SI
+	VBROADCASTSS number37<>+0(SB), Z0
+
+middle8SingleAVX512next:
+	VMOVUPS           (AX), Z1
+	VMOVUPS           (CX), Z2
+	VMOVUPS           64(AX), Z3
+	VMOVUPS           64(CX), Z4
+	VMOVUPS           128(AX), Z5
+	VMOVUPS           128(CX), Z6
+	VMOVUPS           192(AX), Z7
+	VMOVUPS           192(CX), Z8
+	VMOVUPS           256(AX), Z9
+	VMOVUPS           256(CX), Z10
+	VMOVUPS           320(AX), Z11
+	VMOVUPS           320(CX), Z12
+	VMOVUPS           384(AX), Z13
+	VMOVUPS           384(CX), Z14
+	VMOVUPS           448(AX), Z15
+	VMOVUPS           448(CX), Z16
+	VSUBPS            Z9, Z1, Z17
+	VSUBPS            Z10, Z2, Z18
+	VADDPS            Z9, Z1, Z1
+	VADDPS            Z10, Z2, Z2
+	VSUBPS            Z11, Z3, Z9
+	VSUBPS            Z12, Z4, Z10
+	VADDPS            Z11, Z3, Z3
+	VADDPS            Z12, Z4, Z4
+	VSUBPS            Z13, Z5, Z11
+	VSUBPS            Z14, Z6, Z12
+	VADDPS            Z13, Z5, Z5
+	VADDPS            Z14, Z6, Z6
+	VSUBPS            Z15, Z7, Z13
+	VSUBPS            Z16, Z8, Z14
+	VADDPS            Z15, Z7, Z7
+	VADDPS            Z16, Z8, Z8
+	VSUBPS            Z5, Z1, Z15
+	VSUBPS            Z6, Z2, Z16
+	VADDPS            Z5, Z1, Z1
+	VADDPS            Z6, Z2, Z2
+	VSUBPS            Z7, Z3, Z5
+	VSUBPS            Z8, Z4, Z6
+	VADDPS            Z7, Z3, Z3
+	VADDPS            Z8, Z4, Z4
+	VSUBPS            Z3, Z1, Z7
+	VSUBPS            Z4, Z2, Z8
+	VADDPS            Z3, Z1, Z1
+	VADDPS            Z4, Z2, Z2
+	VADDPS            Z6, Z15, Z3
+	VSUBPS            Z5, Z16, Z4
+	VSUBPS            Z6, Z15, Z6
+	VADDPS            Z5, Z16, Z5
+	VADDPS            Z12, Z17, Z15
+	VSUBPS            Z11, Z18, Z16
+	VSUBPS            Z12, Z17, Z12
+	VADDPS            Z11, Z18, Z11
+	VADDPS            Z10, Z9, Z17
+	VSUBPS            Z9, Z10, Z9
+	VSUBPS            Z13, Z14, Z10
+	VADDPS            Z14, Z13, Z13
+	VADDPS            Z10, Z17, Z14
+	VSUBPS            Z13, Z9, Z18
+	VSUBPS            Z10, Z17, Z10
+	VADDPS            Z13, Z9, Z9
+	VMOVAPS           Z15, Z13
+	VFNMADD231PS      Z0, Z14, Z13
+	VMOVAPS           Z16, Z17
+	VFNMADD231PS      Z0, Z18, Z17
+	VFMADD231PS       Z0, Z14, Z15
+	VFMADD231PS       Z0, Z18, Z16
+	VMOVAPS           Z12, Z14
+	VFNMADD231PS      Z0, Z9, Z14
+	VMOVAPS           Z11, Z18
+	VFMADD231PS       Z0, Z10, Z18
+	VFMADD231PS       Z0, Z9, Z12
+	VFNMADD231PS      Z0, Z10, Z11
+	VMULPS.BCST       (DX), Z1, Z9
+	VMULPS.BCST       (BX), Z1, Z1
+	VFNMADD231PS.BCST (BX), Z2, Z9
+	VFMADD231PS.BCST  (DX), Z2, Z1
+	VMULPS.BCST       4(DX), Z15, Z2
+	VMULPS.BCST       4(BX), Z15, Z10
+	VFNMADD231PS.BCST 4(BX), Z16, Z2
+	VFMADD231PS.BCST  4(DX), Z16, Z10
+	VMULPS.BCST       8(DX), Z3, Z15
+	VMULPS.BCST       8(BX), Z3, Z3
+	VFNMADD231PS.BCST 8(BX), Z4, Z15
+	VFMADD231PS.BCST  8(DX), Z4, Z3
+	VMULPS.BCST       12(DX), Z12, Z4
+	VMULPS.BCST       12(BX), Z12, Z12
+	VFNMADD231PS.BCST 12(BX), Z11, Z4
+	VFMADD231PS.BCST  12(DX), Z11, Z12
+	VMULPS.BCST       16(DX), Z7, Z11
+	VMULPS.BCST       16(BX), Z7, Z7
+	VFNMADD231PS.BCST 16(BX), Z8, Z11
+	VFMADD231PS.BCST  16(DX), Z8, Z7
+	VMULPS.BCST       20(DX), Z13, Z8
+	VMULPS.BCST       20(BX), Z13, Z13
+	VFNMADD231PS.BCST 20(BX), Z17, Z8
+	VFMADD231PS.BCST  20(DX), Z17, Z13
+	VMULPS.BCST       24(DX), Z6, Z16
+	VMULPS.BCST       24(BX), Z6, Z6
+	VFNMADD231PS.BCST 24(BX), Z5, Z16
+	VFMADD231PS.BCST  24(DX), Z5, Z6
+	VMULPS.BCST       28(DX), Z14, Z5
+	VMULPS.BCST       28(BX), Z14, Z14
+	VFNMADD231PS.BCST 28(BX), Z18, Z5
+	VFMADD231PS.BCST  28(DX), Z18, Z14
+	VSUBPS            Z7, Z1, Z17
+	VSUBPS            Z11, Z9, Z18
+	VADDPS            Z7, Z1, Z1
+	VADDPS            Z11, Z9, Z7
+	VSUBPS            Z13, Z10, Z9
+	VSUBPS            Z8, Z2, Z11
+	VADDPS            Z13, Z10, Z10
+	VADDPS            Z8, Z2, Z2
+	VSUBPS            Z6, Z3, Z8
+	VSUBPS            Z16, Z15, Z13
+	VADDPS            Z6, Z3, Z3
+	VADDPS            Z16, Z15, Z6
+	VSUBPS            Z14, Z12, Z15
+	VSUBPS            Z5, Z4, Z16
+	VADDPS            Z14, Z12, Z12
+	VADDPS            Z5, Z4, Z4
+	VSUBPS            Z3, Z1, Z5
+	VSUBPS            Z6, Z7, Z14
+	VADDPS            Z3, Z1, Z1
+	VADDPS            Z6, Z7, Z3
+	VSUBPS            Z12, Z10, Z6
+	VSUBPS            Z4, Z2, Z7
+	VADDPS            Z12, Z10, Z10
+	VADDPS            Z4, Z2, Z2
+	VSUBPS            Z10, Z1, Z4
+	VSUBPS            Z2, Z3, Z12
+	VADDPS            Z10, Z1, Z1
+	VADDPS            Z2, Z3, Z2
+	VADDPS            Z7, Z5, Z3
+	VSUBPS            Z6, Z14, Z10
+	VSUBPS            Z7, Z5, Z5
+	VADDPS            Z6, Z14, Z6
+	VADDPS            Z13, Z17, Z7
+	VSUBPS            Z8, Z18, Z14
+	VSUBPS            Z13, Z17, Z13
+	VADDPS            Z8, Z18, Z8
+	VADDPS            Z11, Z9, Z17
+	VSUBPS            Z9, Z11, Z9
+	VSUBPS            Z15, Z16, Z11
+	VADDPS            Z16, Z15, Z15
+	VADDPS            Z11, Z17, Z16
+	VSUBPS            Z15, Z9, Z18
+	VSUBPS            Z11, Z17, Z11
+	VADDPS            Z15, Z9, Z9
+	VMOVAPS           Z7, Z15
+	VFNMADD231PS      Z0, Z16, Z15
+	VMOVAPS           Z14, Z17
+	VFNMADD231PS      Z0, Z18, Z17
+	VFMADD231PS       Z0, Z16, Z7
+	VFMADD231PS       Z0, Z18, Z14
+	VMOVAPS           Z13, Z16
+	VFNMADD231PS      Z0, Z9, Z16
+	VMOVAPS           Z8, Z18
+	VFMADD231PS       Z0, Z11, Z18
+	VFMADD231PS       Z0, Z9, Z13
+	VFNMADD231PS      Z0, Z11, Z8
+	VMOVUPS           Z2, (AX)
+	VMOVUPS           Z1, (CX)
+	VMOVUPS           Z14, 64(AX)
+	VMOVUPS           Z7, 64(CX)
+	VMOVUPS           Z10, 128(AX)
+	VMOVUPS           Z3, 128(CX)
+	VMOVUPS           Z8, 192(AX)
+	VMOVUPS           Z13, 192(CX)
+	VMOVUPS           Z12, 256(AX)
+	VMOVUPS           Z4, 256(CX)
+	VMOVUPS           Z17, 320(AX)
+	VMOVUPS           Z15, 320(CX)
+	VMOVUPS           Z6, 384(AX)
+	VMOVUPS           Z5, 384(CX)
+	VMOVUPS           Z18, 448(AX)
+	VMOVUPS           Z16, 448(CX)
+	ADDQ              $0x00000200, AX
+	ADDQ              $0x00000200, CX
+	ADDQ              $0x20, DX
+	ADDQ              $0x20, BX
+	DECQ              SI
+	JNZ               middle8SingleAVX512next
+	VZEROUPPER
+	RET
+
+// func phaseCubicSingleAVX512(re *float32, im *float32, potential *float32, coupling *float32, points int)
+// Requires: AVX, AVX512F
+TEXT ·phaseCubicSingleAVX512(SB), NOSPLIT, $0-40
+	MOVQ         re+0(FP), AX
+	MOVQ         im+8(FP), CX
+	MOVQ         potential+16(FP), DX
+	MOVQ         coupling+24(FP), BX
+	MOVQ         points+32(FP), SI
+	VBROADCASTSS number38<>+0(SB), Z0
+	VBROADCASTSS number39<>+0(SB), Z0
+
+phaseCubicSingleAVX512next:
+	VMOVUPS          (AX), Z1
+	VMOVUPS          (CX), Z2
+	VMULPS           Z1, Z1, Z3
+	VFMADD231PS      Z2, Z2, Z3
+	VBROADCASTSS     (BX), Z4
+	VBROADCASTSS     (DX), Z5
+	VFMADD231PS      Z3, Z4, Z5
+	VADDPS           Z0, Z5, Z3
+	VSUBPS           Z0, Z3, Z4
+	VSUBPS           Z4, Z5, Z4
+	VPSLLD           $0x1f, Z3, Z3
+	VMULPS           Z4, Z4, Z5
+	VBROADCASTSS     number40<>+0(SB), Z6
+	VBROADCASTSS     number41<>+0(SB), Z7
+	VFMADD213PS.BCST number42<>+0(SB), Z5, Z6
+	VFMADD213PS.BCST number43<>+0(SB), Z5, Z7
+	VFMADD213PS.BCST number44<>+0(SB), Z5, Z6
+	VFMADD213PS.BCST number45<>+0(SB), Z5, Z7
+	VFMADD213PS.BCST number46<>+0(SB), Z5, Z6
+	VFMADD213PS.BCST number47<>+0(SB), Z5, Z7
+	VFMADD213PS.BCST number48<>+0(SB), Z5, Z6
+	VFMADD213PS.BCST number49<>+0(SB), Z5, Z7
+	VMULPS           Z4, Z6, Z4
+	VMULPS           Z5, Z7, Z5
+	VMOVAPS          Z1, Z6
+	VFMADD231PS      Z4, Z2, Z6
+	VFMADD231PS      Z5, Z1, Z6
+	VMOVAPS          Z2, Z7
+	VFNMADD231PS     Z4, Z1, Z7
+	VFMADD231PS      Z5, Z2, Z7
+	VPXORD           Z3, Z6, Z6
+	VPXORD           Z3, Z7, Z7
+	VMOVUPS          Z6, (AX)
+	VMOVUPS          Z7, (CX)
+	ADDQ             $0x40, AX
+	ADDQ             $0x40, CX
+	ADDQ             $0x04, DX
+	ADDQ             $0x04, BX
+	DECQ             SI
+	JNZ              phaseCubicSingleAVX512next
+	VZEROUPPER
+	RET
+
+DATA number38<>+0(SB)/4, $(6755399400000000.0)
+GLOBL number38<>(SB), RODATA|NOPTR, $4
+
+DATA number39<>+0(SB)/4, $(12582912.0)
+GLOBL number39<>(SB), RODATA|NOPTR, $4
+
+DATA number40<>+0(SB)/4, $(0.07643381)
+GLOBL number40<>(SB), RODATA|NOPTR, $4
+
+DATA number41<>+0(SB)/4, $(-0.023963874)
+GLOBL number41<>(SB), RODATA|NOPTR, $4
+
+DATA number42<>+0(SB)/4, $(-0.5976254)
+GLOBL number42<>(SB), RODATA|NOPTR, $4
+
+DATA number43<>+0(SB)/4, $(0.23468377)
+GLOBL number43<>(SB), RODATA|NOPTR, $4
+
+DATA number44<>+0(SB)/4, $(2.5499578)
+GLOBL number44<>(SB), RODATA|NOPTR, $4
+
+DATA number45<>+0(SB)/4, $(-1.3351616)
+GLOBL number45<>(SB), RODATA|NOPTR, $4
+
+DATA number46<>+0(SB)/4, $(-5.167702)
+GLOBL number46<>(SB), RODATA|NOPTR, $4
+
+DATA number47<>+0(SB)/4, $(4.0587053)
+GLOBL number47<>(SB), RODATA|NOPTR, $4
+
+DATA number48<>+0(SB)/4, $(3.1415925)
+GLOBL number48<>(SB), RODATA|NOPTR, $4
+
+DATA number49<>+0(SB)/4, $(-4.934802)
+GLOBL number49<>(SB), RODATA|NOPTR, $4
+
+// func phaseShiftedSingleAVX512(re *float32, im *float32, potential *float32, coupling *float32, density *float32, points int)
+// Requires: AVX, AVX512F
+TEXT ·phaseShiftedSingleAVX512(SB), NOSPLIT, $0-48
+	MOVQ         re+0(FP), AX
+	MOVQ         im+8(FP), CX
+	MOVQ         potential+16(FP), DX
+	MOVQ         coupling+24(FP), BX
+	MOVQ         density+32(FP), SI
+	MOVQ         points+40(FP), DI
+	VBROADCASTSS number38<>+0(SB), Z0
+	VBROADCASTSS number39<>+0(SB), Z0
+
+phaseShiftedSingleAVX512next:
+	VMOVUPS          (AX), Z1
+	VMOVUPS          (CX), Z2
+	VMULPS           Z1, Z1, Z3
+	VFMADD231PS      Z2, Z2, Z3
+	VBROADCASTSS     (BX), Z4
+	VBROADCASTSS     (SI), Z5
+	VSUBPS           Z5, Z3, Z3
+	VBROADCASTSS     (DX), Z5
+	VFMADD231PS      Z3, Z4, Z5
+	VADDPS           Z0, Z5, Z3
+	VSUBPS           Z0, Z3, Z4
+	VSUBPS           Z4, Z5, Z4
+	VPSLLD           $0x1f, Z3, Z3
+	VMULPS           Z4, Z4, Z5
+	VBROADCASTSS     number40<>+0(SB), Z6
+	VBROADCASTSS     number41<>+0(SB), Z7
+	VFMADD213PS.BCST number42<>+0(SB), Z5, Z6
+	VFMADD213PS.BCST number43<>+0(SB), Z5, Z7
+	VFMADD213PS.BCST number44<>+0(SB), Z5, Z6
+	VFMADD213PS.BCST number45<>+0(SB), Z5, Z7
+	VFMADD213PS.BCST number46<>+0(SB), Z5, Z6
+	VFMADD213PS.BCST number47<>+0(SB), Z5, Z7
+	VFMADD213PS.BCST number48<>+0(SB), Z5, Z6
+	VFMADD213PS.BCST number49<>+0(SB), Z5, Z7
+	VMULPS           Z4, Z6, Z4
+	VMULPS           Z5, Z7, Z5
+	VMOVAPS          Z1, Z6
+	VFMADD231PS      Z4, Z2, Z6
+	VFMADD231PS      Z5, Z1, Z6
+	VMOVAPS          Z2, Z7
+	VFNMADD231PS     Z4, Z1, Z7
+	VFMADD231PS      Z5, Z2, Z7
+	VPXORD           Z3, Z6, Z6
+	VPXORD           Z3, Z7, Z7
+	VMOVUPS          Z6, (AX)
+	VMOVUPS          Z7, (CX)
+	ADDQ             $0x40, AX
+	ADDQ             $0x40, CX
+	ADDQ             $0x04, DX
+	ADDQ             $0x04, BX
+	ADDQ             $0x04, SI
+	DECQ             DI
+	JNZ              phaseShiftedSingleAVX512next
+	VZEROUPPER
+	RET
+
+// func phaseSwollenSingleAVX512(re *float32, im *float32, potential *float32, coupling *float32, density *float32, swelling float32, scale float32, points int)
+// Requires: AVX, AVX512F
+TEXT ·phaseSwollenSingleAVX512(SB), NOSPLIT, $0-56
+	MOVQ         re+0(FP), AX
+	MOVQ         im+8(FP), CX
+	MOVQ         potential+16(FP), DX
+	MOVQ         coupling+24(FP), BX
+	MOVQ         density+32(FP), SI
+	VBROADCASTSS swelling+40(FP), Z0
+	VBROADCASTSS scale+44(FP), Z1
+	MOVQ         points+48(FP), DI
+	VBROADCASTSS number38<>+0(SB), Z2
+	VBROADCASTSS number39<>+0(SB), Z2
+
+phaseSwollenSingleAVX512next:
+	VMOVUPS          (AX), Z3
+	VMOVUPS          (CX), Z4
+	VMULPS           Z3, Z3, Z5
+	VFMADD231PS      Z4, Z4, Z5
+	VBROADCASTSS     (BX), Z6
+	VBROADCASTSS     (SI), Z7
+	VSUBPS           Z7, Z5, Z5
+	VBROADCASTSS     number50<>+0(SB), Z7
+	VMULPS           Z5, Z0, Z5
+	VADDPS           Z5, Z5, Z8
+	VADDPS           Z7, Z8, Z8
+	VSQRTPS          Z8, Z8
+	VBROADCASTSS     number51<>+0(SB), Z9
+	VBROADCASTSS     number52<>+0(SB), Z10
+	VFMADD231PS      Z10, Z5, Z9
+	VMULPS           Z5, Z9, Z9
+	VADDPS           Z8, Z7, Z7
+	VBROADCASTSS     number53<>+0(SB), Z10
+	VFMADD231PS      Z10, Z5, Z7
+	VMULPS           Z8, Z7, Z5
+	VDIVPS           Z5, Z9, Z9
+	VMULPS           Z1, Z9, Z5
+	VBROADCASTSS     (DX), Z7
+	VFMADD231PS      Z5, Z6, Z7
+	VADDPS           Z2, Z7, Z5
+	VSUBPS           Z2, Z5, Z6
+	VSUBPS           Z6, Z7, Z6
+	VPSLLD           $0x1f, Z5, Z5
+	VMULPS           Z6, Z6, Z7
+	VBROADCASTSS     number40<>+0(SB), Z8
+	VBROADCASTSS     number41<>+0(SB), Z9
+	VFMADD213PS.BCST number42<>+0(SB), Z7, Z8
+	VFMADD213PS.BCST number43<>+0(SB), Z7, Z9
+	VFMADD213PS.BCST number44<>+0(SB), Z7, Z8
+	VFMADD213PS.BCST number45<>+0(SB), Z7, Z9
+	VFMADD213PS.BCST number46<>+0(SB), Z7, Z8
+	VFMADD213PS.BCST number47<>+0(SB), Z7, Z9
+	VFMADD213PS.BCST number48<>+0(SB), Z7, Z8
+	VFMADD213PS.BCST number49<>+0(SB), Z7, Z9
+	VMULPS           Z6, Z8, Z6
+	VMULPS           Z7, Z9, Z7
+	VMOVAPS          Z3, Z8
+	VFMADD231PS      Z6, Z4, Z8
+	VFMADD231PS      Z7, Z3, Z8
+	VMOVAPS          Z4, Z9
+	VFNMADD231PS     Z6, Z3, Z9
+	VFMADD231PS      Z7, Z4, Z9
+	VPXORD           Z5, Z8, Z8
+	VPXORD           Z5, Z9, Z9
+	VMOVUPS          Z8, (AX)
+	VMOVUPS          Z9, (CX)
+	ADDQ             $0x40, AX
+	ADDQ             $0x40, CX
+	ADDQ             $0x04, DX
+	ADDQ             $0x04, BX
+	ADDQ             $0x04, SI
+	DECQ             DI
+	JNZ              phaseSwollenSingleAVX512next
+	VZEROUPPER
+	RET
+
+DATA number50<>+0(SB)/4, $(1.0)
+GLOBL number50<>(SB), RODATA|NOPTR, $4
+
+DATA number51<>+0(SB)/4, $(4.0)
+GLOBL number51<>(SB), RODATA|NOPTR, $4
+
+DATA number52<>+0(SB)/4, $(9.0)
+GLOBL number52<>(SB), RODATA|NOPTR, $4
+
+DATA number53<>+0(SB)/4, $(3.0)
+GLOBL number53<>(SB), RODATA|NOPTR, $4
+
+// func dampSingleAVX512(re *float32, im *float32, d *float32, points int)
+// Requires: AVX, AVX512F
+TEXT ·dampSingleAVX512(SB), NOSPLIT, $0-32
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ d+16(FP), DX
+	MOVQ points+24(FP), BX
+
+dampSingleAVX512next:
+	VBROADCASTSS (DX), Z0
+	VMOVUPS      (AX), Z1
+	VMULPS       Z1, Z0, Z1
+	VMOVUPS      Z1, (AX)
+	VMOVUPS      (CX), Z1
+	VMULPS       Z1, Z0, Z0
+	VMOVUPS      Z0, (CX)
+	ADDQ         $0x40, AX
+	ADDQ         $0x40, CX
+	ADDQ         $0x04, DX
+	DECQ         BX
+	JNZ          dampSingleAVX512next
+	VZEROUPPER
+	RET
+
+// func forward2SingleAVX2(re *float32, im *float32, twiddle *float32, blocks int, span int)
+// Requires: AVX, FMA3
+TEXT ·forward2SingleAVX2(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+forward2SingleAVX2block:
+	MOVQ DX, R8
+	MOVQ SI, R9
+
+forward2SingleAVX2next:
+	VMOVUPS      (AX), Y0
+	VMOVUPS      (CX), Y1
+	VMOVUPS      (AX)(DI*1), Y2
+	VMOVUPS      (CX)(DI*1), Y3
+	VSUBPS       Y2, Y0, Y4
+	VSUBPS       Y3, Y1, Y5
+	VADDPS       Y2, Y0, Y0
+	VADDPS       Y3, Y1, Y1
+	VMOVUPS      Y0, (AX)
+	VMOVUPS      Y1, (CX)
+	VBROADCASTSS (R8), Y0
+	VBROADCASTSS 4(R8), Y1
+	VMULPS       Y0, Y4, Y2
+	VMULPS       Y1, Y4, Y3
+	VFNMADD231PS Y1, Y5, Y2
+	VFMADD231PS  Y0, Y5, Y3
+	VMOVUPS      Y2, (AX)(DI*1)
+	VMOVUPS      Y3, (CX)(DI*1)
+	VMOVUPS      32(AX), Y0
+	VMOVUPS      32(CX), Y1
+	VMOVUPS      32(AX)(DI*1), Y2
+	VMOVUPS      32(CX)(DI*1), Y3
+	VSUBPS       Y2, Y0, Y4
+	VSUBPS       Y3, Y1, Y5
+	VADDPS       Y2, Y0, Y0
+	VADDPS       Y3, Y1, Y1
+	VMOVUPS      Y0, 32(AX)
+	VMOVUPS      Y1, 32(CX)
+	VBROADCASTSS (R8), Y0
+	VBROADCASTSS 4(R8), Y1
+	VMULPS       Y0, Y4, Y2
+	VMULPS       Y1, Y4, Y3
+	VFNMADD231PS Y1, Y5, Y2
+	VFMADD231PS  Y0, Y5, Y3
+	VMOVUPS      Y2, 32(AX)(DI*1)
+	VMOVUPS      Y3, 32(CX)(DI*1)
+	ADDQ         $0x40, AX
+	ADDQ         $0x40, CX
+	ADDQ         $0x00000008, R8
+	DECQ         R9
+	JNZ          forward2SingleAVX2next
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	DECQ         BX
+	JNZ          forward2SingleAVX2block
+	VZEROUPPER
+	RET
+
+// func backward2SingleAVX2(re *float32, im *float32, twiddle *float32, blocks int, span int)
+// Requires: AVX, FMA3
+TEXT ·backward2SingleAVX2(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+backward2SingleAVX2block:
+	MOVQ DX, R8
+	MOVQ SI, R9
+
+backward2SingleAVX2next:
+	VMOVUPS      (AX), Y0
+	VMOVUPS      (CX), Y1
+	VMOVUPS      (AX)(DI*1), Y2
+	VMOVUPS      (CX)(DI*1), Y3
+	VBROADCASTSS (R8), Y4
+	VBROADCASTSS 4(R8), Y5
+	VMULPS       Y4, Y2, Y6
+	VMULPS       Y4, Y3, Y4
+	VFMADD231PS  Y5, Y3, Y6
+	VFNMADD231PS Y5, Y2, Y4
+	VSUBPS       Y4, Y1, Y2
+	VSUBPS       Y6, Y0, Y3
+	VADDPS       Y4, Y1, Y1
+	VADDPS       Y6, Y0, Y0
+	VMOVUPS      Y0, (AX)
+	VMOVUPS      Y1, (CX)
+	VMOVUPS      Y3, (AX)(DI*1)
+	VMOVUPS      Y2, (CX)(DI*1)
+	VMOVUPS      32(AX), Y0
+	VMOVUPS      32(CX), Y1
+	VMOVUPS      32(AX)(DI*1), Y2
+	VMOVUPS      32(CX)(DI*1), Y3
+	VBROADCASTSS (R8), Y4
+	VBROADCASTSS 4(R8), Y5
+	VMULPS       Y4, Y2, Y6
+	VMULPS       Y4, Y3, Y4
+	VFMADD231PS  Y5, Y3, Y6
+	VFNMADD231PS Y5, Y2, Y4
+	VSUBPS       Y4, Y1, Y2
+	VSUBPS       Y6, Y0, Y3
+	VADDPS       Y4, Y1, Y1
+	VADDPS       Y6, Y0, Y0
+	VMOVUPS      Y0, 32(AX)
+	VMOVUPS      Y1, 32(CX)
+	VMOVUPS      Y3, 32(AX)(DI*1)
+	VMOVUPS      Y2, 32(CX)(DI*1)
+	ADDQ         $0x40, AX
+	ADDQ         $0x40, CX
+	ADDQ         $0x00000008, R8
+	DECQ         R9
+	JNZ          backward2SingleAVX2next
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	DECQ         BX
+	JNZ          backward2SingleAVX2block
+	VZEROUPPER
+	RET
+
+// func forward3SingleAVX2(re *float32, im *float32, twiddle *float32, blocks int, span int)
+// Requires: AVX, FMA3
+TEXT ·forward3SingleAVX2(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+forward3SingleAVX2block:
+	MOVQ DX, R8
+	MOVQ SI, R9
+
+forward3SingleAVX2next:
+	VMOVUPS      (AX), Y0
+	VMOVUPS      (CX), Y1
+	VMOVUPS      (AX)(DI*1), Y2
+	VMOVUPS      (CX)(DI*1), Y3
+	VMOVUPS      (AX)(DI*2), Y4
+	VMOVUPS      (CX)(DI*2), Y5
+	VSUBPS       Y4, Y2, Y6
+	VSUBPS       Y5, Y3, Y7
+	VADDPS       Y4, Y2, Y2
+	VADDPS       Y5, Y3, Y3
+	VADDPS       Y2, Y0, Y4
+	VADDPS       Y3, Y1, Y5
+	VBROADCASTSS number30<>+0(SB), Y8
+	VFMADD231PS  Y8, Y2, Y0
+	VFMADD231PS  Y8, Y3, Y1
+	VBROADCASTSS number31<>+0(SB), Y2
+	VMULPS       Y2, Y6, Y3
+	VMULPS       Y2, Y7, Y2
+	VADDPS       Y2, Y0, Y6
+	VSUBPS       Y3, Y1, Y7
+	VSUBPS       Y2, Y0, Y0
+	VADDPS       Y3, Y1, Y1
+	VMOVUPS      Y4, (AX)
+	VMOVUPS      Y5, (CX)
+	VBROADCASTSS (R8), Y2
+	VBROADCASTSS 4(R8), Y3
+	VMULPS       Y2, Y6, Y4
+	VMULPS       Y3, Y6, Y5
+	VFNMADD231PS Y3, Y7, Y4
+	VFMADD231PS  Y2, Y7, Y5
+	VMOVUPS      Y4, (AX)(DI*1)
+	VMOVUPS      Y5, (CX)(DI*1)
+	VBROADCASTSS 8(R8), Y2
+	VBROADCASTSS 12(R8), Y3
+	VMULPS       Y2, Y0, Y4
+	VMULPS       Y3, Y0, Y0
+	VFNMADD231PS Y3, Y1, Y4
+	VFMADD231PS  Y2, Y1, Y0
+	VMOVUPS      Y4, (AX)(DI*2)
+	VMOVUPS      Y0, (CX)(DI*2)
+	VMOVUPS      32(AX), Y0
+	VMOVUPS      32(CX), Y1
+	VMOVUPS      32(AX)(DI*1), Y2
+	VMOVUPS      32(CX)(DI*1), Y3
+	VMOVUPS      32(AX)(DI*2), Y4
+	VMOVUPS      32(CX)(DI*2), Y5
+	VSUBPS       Y4, Y2, Y6
+	VSUBPS       Y5, Y3, Y7
+	VADDPS       Y4, Y2, Y2
+	VADDPS       Y5, Y3, Y3
+	VADDPS       Y2, Y0, Y4
+	VADDPS       Y3, Y1, Y5
+	VBROADCASTSS number30<>+0(SB), Y8
+	VFMADD231PS  Y8, Y2, Y0
+	VFMADD231PS  Y8, Y3, Y1
+	VBROADCASTSS number31<>+0(SB), Y2
+	VMULPS       Y2, Y6, Y3
+	VMULPS       Y2, Y7, Y2
+	VADDPS       Y2, Y0, Y6
+	VSUBPS       Y3, Y1, Y7
+	VSUBPS       Y2, Y0, Y0
+	VADDPS       Y3, Y1, Y1
+	VMOVUPS      Y4, 32(AX)
+	VMOVUPS      Y5, 32(CX)
+	VBROADCASTSS (R8), Y2
+	VBROADCASTSS 4(R8), Y3
+	VMULPS       Y2, Y6, Y4
+	VMULPS       Y3, Y6, Y5
+	VFNMADD231PS Y3, Y7, Y4
+	VFMADD231PS  Y2, Y7, Y5
+	VMOVUPS      Y4, 32(AX)(DI*1)
+	VMOVUPS      Y5, 32(CX)(DI*1)
+	VBROADCASTSS 8(R8), Y2
+	VBROADCASTSS 12(R8), Y3
+	VMULPS       Y2, Y0, Y4
+	VMULPS       Y3, Y0, Y0
+	VFNMADD231PS Y3, Y1, Y4
+	VFMADD231PS  Y2, Y1, Y0
+	VMOVUPS      Y4, 32(AX)(DI*2)
+	VMOVUPS      Y0, 32(CX)(DI*2)
+	ADDQ         $0x40, AX
+	ADDQ         $0x40, CX
+	ADDQ         $0x00000010, R8
+	DECQ         R9
+	JNZ          forward3SingleAVX2next
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	DECQ         BX
+	JNZ          forward3SingleAVX2block
+	VZEROUPPER
+	RET
+
+// func backward3SingleAVX2(re *float32, im *float32, twiddle *float32, blocks int, span int)
+// Requires: AVX, FMA3
+TEXT ·backward3SingleAVX2(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+backward3SingleAVX2block:
+	MOVQ DX, R8
+	MOVQ SI, R9
+
+backward3SingleAVX2next:
+	VMOVUPS      (AX), Y0
+	VMOVUPS      (CX), Y1
+	VMOVUPS      (AX)(DI*1), Y2
+	VMOVUPS      (CX)(DI*1), Y3
+	VBROADCASTSS (R8), Y4
+	VBROADCASTSS 4(R8), Y5
+	VMULPS       Y4, Y2, Y6
+	VMULPS       Y4, Y3, Y4
+	VFMADD231PS  Y5, Y3, Y6
+	VFNMADD231PS Y5, Y2, Y4
+	VMOVUPS      (AX)(DI*2), Y2
+	VMOVUPS      (CX)(DI*2), Y3
+	VBROADCASTSS 8(R8), Y5
+	VBROADCASTSS 12(R8), Y7
+	VMULPS       Y5, Y2, Y8
+	VMULPS       Y5, Y3, Y5
+	VFMADD231PS  Y7, Y3, Y8
+	VFNMADD231PS Y7, Y2, Y5
+	VSUBPS       Y5, Y4, Y2
+	VSUBPS       Y8, Y6, Y3
+	VADDPS       Y5, Y4, Y4
+	VADDPS       Y8, Y6, Y5
+	VADDPS       Y4, Y1, Y6
+	VADDPS       Y5, Y0, Y7
+	VBROADCASTSS number30<>+0(SB), Y8
+	VFMADD231PS  Y8, Y4, Y1
+	VFMADD231PS  Y8, Y5, Y0
+	VBROADCASTSS number31<>+0(SB), Y4
+	VMULPS       Y4, Y2, Y2
+	VMULPS       Y4, Y3, Y3
+	VADDPS       Y3, Y1, Y4
+	VSUBPS       Y2, Y0, Y5
+	VSUBPS       Y3, Y1, Y1
+	VADDPS       Y2, Y0, Y0
+	VMOVUPS      Y7, (AX)
+	VMOVUPS      Y6, (CX)
+	VMOVUPS      Y5, (AX)(DI*1)
+	VMOVUPS      Y4, (CX)(DI*1)
+	VMOVUPS      Y0, (AX)(DI*2)
+	VMOVUPS      Y1, (CX)(DI*2)
+	VMOVUPS      32(AX), Y0
+	VMOVUPS      32(CX), Y1
+	VMOVUPS      32(AX)(DI*1), Y2
+	VMOVUPS      32(CX)(DI*1), Y3
+	VBROADCASTSS (R8), Y4
+	VBROADCASTSS 4(R8), Y5
+	VMULPS       Y4, Y2, Y6
+	VMULPS       Y4, Y3, Y4
+	VFMADD231PS  Y5, Y3, Y6
+	VFNMADD231PS Y5, Y2, Y4
+	VMOVUPS      32(AX)(DI*2), Y2
+	VMOVUPS      32(CX)(DI*2), Y3
+	VBROADCASTSS 8(R8), Y5
+	VBROADCASTSS 12(R8), Y7
+	VMULPS       Y5, Y2, Y8
+	VMULPS       Y5, Y3, Y5
+	VFMADD231PS  Y7, Y3, Y8
+	VFNMADD231PS Y7, Y2, Y5
+	VSUBPS       Y5, Y4, Y2
+	VSUBPS       Y8, Y6, Y3
+	VADDPS       Y5, Y4, Y4
+	VADDPS       Y8, Y6, Y5
+	VADDPS       Y4, Y1, Y6
+	VADDPS       Y5, Y0, Y7
+	VBROADCASTSS number30<>+0(SB), Y8
+	VFMADD231PS  Y8, Y4, Y1
+	VFMADD231PS  Y8, Y5, Y0
+	VBROADCASTSS number31<>+0(SB), Y4
+	VMULPS       Y4, Y2, Y2
+	VMULPS       Y4, Y3, Y3
+	VADDPS       Y3, Y1, Y4
+	VSUBPS       Y2, Y0, Y5
+	VSUBPS       Y3, Y1, Y1
+	VADDPS       Y2, Y0, Y0
+	VMOVUPS      Y7, 32(AX)
+	VMOVUPS      Y6, 32(CX)
+	VMOVUPS      Y5, 32(AX)(DI*1)
+	VMOVUPS      Y4, 32(CX)(DI*1)
+	VMOVUPS      Y0, 32(AX)(DI*2)
+	VMOVUPS      Y1, 32(CX)(DI*2)
+	ADDQ         $0x40, AX
+	ADDQ         $0x40, CX
+	ADDQ         $0x00000010, R8
+	DECQ         R9
+	JNZ          backward3SingleAVX2next
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	DECQ         BX
+	JNZ          backward3SingleAVX2block
+	VZEROUPPER
+	RET
+
+// func forward4SingleAVX2(re *float32, im *float32, twiddle *float32, blocks int, span int)
+// Requires: AVX, FMA3
+TEXT ·forward4SingleAVX2(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+forward4SingleAVX2block:
+	MOVQ DX, R9
+	MOVQ SI, R10
+
+forward4SingleAVX2next:
+	VMOVUPS      (AX), Y0
+	VMOVUPS      (CX), Y1
+	VMOVUPS      (AX)(DI*1), Y2
+	VMOVUPS      (CX)(DI*1), Y3
+	VMOVUPS      (AX)(DI*2), Y4
+	VMOVUPS      (CX)(DI*2), Y5
+	VMOVUPS      (AX)(R8*1), Y6
+	VMOVUPS      (CX)(R8*1), Y7
+	VSUBPS       Y4, Y0, Y8
+	VSUBPS       Y5, Y1, Y9
+	VADDPS       Y4, Y0, Y0
+	VADDPS       Y5, Y1, Y1
+	VSUBPS       Y6, Y2, Y4
+	VSUBPS       Y7, Y3, Y5
+	VADDPS       Y6, Y2, Y2
+	VADDPS       Y7, Y3, Y3
+	VSUBPS       Y2, Y0, Y6
+	VSUBPS       Y3, Y1, Y7
+	VADDPS       Y2, Y0, Y0
+	VADDPS       Y3, Y1, Y1
+	VADDPS       Y5, Y8, Y2
+	VSUBPS       Y4, Y9, Y3
+	VSUBPS       Y5, Y8, Y5
+	VADDPS       Y4, Y9, Y4
+	VMOVUPS      Y0, (AX)
+	VMOVUPS      Y1, (CX)
+	VBROADCASTSS (R9), Y0
+	VBROADCASTSS 4(R9), Y1
+	VMULPS       Y0, Y2, Y8
+	VMULPS       Y1, Y2, Y2
+	VFNMADD231PS Y1, Y3, Y8
+	VFMADD231PS  Y0, Y3, Y2
+	VMOVUPS      Y8, (AX)(DI*1)
+	VMOVUPS      Y2, (CX)(DI*1)
+	VBROADCASTSS 8(R9), Y0
+	VBROADCASTSS 12(R9), Y1
+	VMULPS       Y0, Y6, Y2
+	VMULPS       Y1, Y6, Y3
+	VFNMADD231PS Y1, Y7, Y2
+	VFMADD231PS  Y0, Y7, Y3
+	VMOVUPS      Y2, (AX)(DI*2)
+	VMOVUPS      Y3, (CX)(DI*2)
+	VBROADCASTSS 16(R9), Y0
+	VBROADCASTSS 20(R9), Y1
+	VMULPS       Y0, Y5, Y2
+	VMULPS       Y1, Y5, Y3
+	VFNMADD231PS Y1, Y4, Y2
+	VFMADD231PS  Y0, Y4, Y3
+	VMOVUPS      Y2, (AX)(R8*1)
+	VMOVUPS      Y3, (CX)(R8*1)
+	VMOVUPS      32(AX), Y0
+	VMOVUPS      32(CX), Y1
+	VMOVUPS      32(AX)(DI*1), Y2
+	VMOVUPS      32(CX)(DI*1), Y3
+	VMOVUPS      32(AX)(DI*2), Y4
+	VMOVUPS      32(CX)(DI*2), Y5
+	VMOVUPS      32(AX)(R8*1), Y6
+	VMOVUPS      32(CX)(R8*1), Y7
+	VSUBPS       Y4, Y0, Y8
+	VSUBPS       Y5, Y1, Y9
+	VADDPS       Y4, Y0, Y0
+	VADDPS       Y5, Y1, Y1
+	VSUBPS       Y6, Y2, Y4
+	VSUBPS       Y7, Y3, Y5
+	VADDPS       Y6, Y2, Y2
+	VADDPS       Y7, Y3, Y3
+	VSUBPS       Y2, Y0, Y6
+	VSUBPS       Y3, Y1, Y7
+	VADDPS       Y2, Y0, Y0
+	VADDPS       Y3, Y1, Y1
+	VADDPS       Y5, Y8, Y2
+	VSUBPS       Y4, Y9, Y3
+	VSUBPS       Y5, Y8, Y5
+	VADDPS       Y4, Y9, Y4
+	VMOVUPS      Y0, 32(AX)
+	VMOVUPS      Y1, 32(CX)
+	VBROADCASTSS (R9), Y0
+	VBROADCASTSS 4(R9), Y1
+	VMULPS       Y0, Y2, Y8
+	VMULPS       Y1, Y2, Y2
+	VFNMADD231PS Y1, Y3, Y8
+	VFMADD231PS  Y0, Y3, Y2
+	VMOVUPS      Y8, 32(AX)(DI*1)
+	VMOVUPS      Y2, 32(CX)(DI*1)
+	VBROADCASTSS 8(R9), Y0
+	VBROADCASTSS 12(R9), Y1
+	VMULPS       Y0, Y6, Y2
+	VMULPS       Y1, Y6, Y3
+	VFNMADD231PS Y1, Y7, Y2
+	VFMADD231PS  Y0, Y7, Y3
+	VMOVUPS      Y2, 32(AX)(DI*2)
+	VMOVUPS      Y3, 32(CX)(DI*2)
+	VBROADCASTSS 16(R9), Y0
+	VBROADCASTSS 20(R9), Y1
+	VMULPS       Y0, Y5, Y2
+	VMULPS       Y1, Y5, Y3
+	VFNMADD231PS Y1, Y4, Y2
+	VFMADD231PS  Y0, Y4, Y3
+	VMOVUPS      Y2, 32(AX)(R8*1)
+	VMOVUPS      Y3, 32(CX)(R8*1)
+	ADDQ         $0x40, AX
+	ADDQ         $0x40, CX
+	ADDQ         $0x00000018, R9
+	DECQ         R10
+	JNZ          forward4SingleAVX2next
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	DECQ         BX
+	JNZ          forward4SingleAVX2block
+	VZEROUPPER
+	RET
+
+// func backward4SingleAVX2(re *float32, im *float32, twiddle *float32, blocks int, span int)
+// Requires: AVX, FMA3
+TEXT ·backward4SingleAVX2(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+backward4SingleAVX2block:
+	MOVQ DX, R9
+	MOVQ SI, R10
+
+backward4SingleAVX2next:
+	VMOVUPS      (AX), Y0
+	VMOVUPS      (CX), Y1
+	VMOVUPS      (AX)(DI*1), Y2
+	VMOVUPS      (CX)(DI*1), Y3
+	VBROADCASTSS (R9), Y4
+	VBROADCASTSS 4(R9), Y5
+	VMULPS       Y4, Y2, Y6
+	VMULPS       Y4, Y3, Y4
+	VFMADD231PS  Y5, Y3, Y6
+	VFNMADD231PS Y5, Y2, Y4
+	VMOVUPS      (AX)(DI*2), Y2
+	VMOVUPS      (CX)(DI*2), Y3
+	VBROADCASTSS 8(R9), Y5
+	VBROADCASTSS 12(R9), Y7
+	VMULPS       Y5, Y2, Y8
+	VMULPS       Y5, Y3, Y5
+	VFMADD231PS  Y7, Y3, Y8
+	VFNMADD231PS Y7, Y2, Y5
+	VMOVUPS      (AX)(R8*1), Y2
+	VMOVUPS      (CX)(R8*1), Y3
+	VBROADCASTSS 16(R9), Y7
+	VBROADCASTSS 20(R9), Y9
+	VMULPS       Y7, Y2, Y10
+	VMULPS       Y7, Y3, Y7
+	VFMADD231PS  Y9, Y3, Y10
+	VFNMADD231PS Y9, Y2, Y7
+	VSUBPS       Y5, Y1, Y2
+	VSUBPS       Y8, Y0, Y3
+	VADDPS       Y5, Y1, Y1
+	VADDPS       Y8, Y0, Y0
+	VSUBPS       Y7, Y4, Y5
+	VSUBPS       Y10, Y6, Y8
+	VADDPS       Y7, Y4, Y4
+	VADDPS       Y10, Y6, Y6
+	VSUBPS       Y4, Y1, Y7
+	VSUBPS       Y6, Y0, Y9
+	VADDPS       Y4, Y1, Y1
+	VADDPS       Y6, Y0, Y0
+	VADDPS       Y8, Y2, Y4
+	VSUBPS       Y5, Y3, Y6
+	VSUBPS       Y8, Y2, Y2
+	VADDPS       Y5, Y3, Y3
+	VMOVUPS      Y0, (AX)
+	VMOVUPS      Y1, (CX)
+	VMOVUPS      Y6, (AX)(DI*1)
+	VMOVUPS      Y4, (CX)(DI*1)
+	VMOVUPS      Y9, (AX)(DI*2)
+	VMOVUPS      Y7, (CX)(DI*2)
+	VMOVUPS      Y3, (AX)(R8*1)
+	VMOVUPS      Y2, (CX)(R8*1)
+	VMOVUPS      32(AX), Y0
+	VMOVUPS      32(CX), Y1
+	VMOVUPS      32(AX)(DI*1), Y2
+	VMOVUPS      32(CX)(DI*1), Y3
+	VBROADCASTSS (R9), Y4
+	VBROADCASTSS 4(R9), Y5
+	VMULPS       Y4, Y2, Y6
+	VMULPS       Y4, Y3, Y4
+	VFMADD231PS  Y5, Y3, Y6
+	VFNMADD231PS Y5, Y2, Y4
+	VMOVUPS      32(AX)(DI*2), Y2
+	VMOVUPS      32(CX)(DI*2), Y3
+	VBROADCASTSS 8(R9), Y5
+	VBROADCASTSS 12(R9), Y7
+	VMULPS       Y5, Y2, Y8
+	VMULPS       Y5, Y3, Y5
+	VFMADD231PS  Y7, Y3, Y8
+	VFNMADD231PS Y7, Y2, Y5
+	VMOVUPS      32(AX)(R8*1), Y2
+	VMOVUPS      32(CX)(R8*1), Y3
+	VBROADCASTSS 16(R9), Y7
+	VBROADCASTSS 20(R9), Y9
+	VMULPS       Y7, Y2, Y10
+	VMULPS       Y7, Y3, Y7
+	VFMADD231PS  Y9, Y3, Y10
+	VFNMADD231PS Y9, Y2, Y7
+	VSUBPS       Y5, Y1, Y2
+	VSUBPS       Y8, Y0, Y3
+	VADDPS       Y5, Y1, Y1
+	VADDPS       Y8, Y0, Y0
+	VSUBPS       Y7, Y4, Y5
+	VSUBPS       Y10, Y6, Y8
+	VADDPS       Y7, Y4, Y4
+	VADDPS       Y10, Y6, Y6
+	VSUBPS       Y4, Y1, Y7
+	VSUBPS       Y6, Y0, Y9
+	VADDPS       Y4, Y1, Y1
+	VADDPS       Y6, Y0, Y0
+	VADDPS       Y8, Y2, Y4
+	VSUBPS       Y5, Y3, Y6
+	VSUBPS       Y8, Y2, Y2
+	VADDPS       Y5, Y3, Y3
+	VMOVUPS      Y0, 32(AX)
+	VMOVUPS      Y1, 32(CX)
+	VMOVUPS      Y6, 32(AX)(DI*1)
+	VMOVUPS      Y4, 32(CX)(DI*1)
+	VMOVUPS      Y9, 32(AX)(DI*2)
+	VMOVUPS      Y7, 32(CX)(DI*2)
+	VMOVUPS      Y3, 32(AX)(R8*1)
+	VMOVUPS      Y2, 32(CX)(R8*1)
+	ADDQ         $0x40, AX
+	ADDQ         $0x40, CX
+	ADDQ         $0x00000018, R9
+	DECQ         R10
+	JNZ          backward4SingleAVX2next
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	DECQ         BX
+	JNZ          backward4SingleAVX2block
+	VZEROUPPER
+	RET
+
+// func forward5SingleAVX2(re *float32, im *float32, twiddle *float32, blocks int, span int)
+// Requires: AVX, FMA3
+TEXT ·forward5SingleAVX2(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+forward5SingleAVX2block:
+	MOVQ DX, R11
+	MOVQ SI, R12
+
+forward5SingleAVX2next:
+	LEAQ         (AX)(DI*4), R9
+	LEAQ         (CX)(DI*4), R10
+	VMOVUPS      (AX), Y0
+	VMOVUPS      (CX), Y1
+	VMOVUPS      (AX)(DI*1), Y2
+	VMOVUPS      (CX)(DI*1), Y3
+	VMOVUPS      (AX)(DI*2), Y4
+	VMOVUPS      (CX)(DI*2), Y5
+	VMOVUPS      (AX)(R8*1), Y6
+	VMOVUPS      (CX)(R8*1), Y7
+	VMOVUPS      (R9), Y8
+	VMOVUPS      (R10), Y9
+	VSUBPS       Y8, Y2, Y10
+	VSUBPS       Y9, Y3, Y11
+	VADDPS       Y8, Y2, Y2
+	VADDPS       Y9, Y3, Y3
+	VSUBPS       Y6, Y4, Y8
+	VSUBPS       Y7, Y5, Y9
+	VADDPS       Y6, Y4, Y4
+	VADDPS       Y7, Y5, Y5
+	VADDPS       Y2, Y0, Y6
+	VADDPS       Y3, Y1, Y7
+	VADDPS       Y4, Y6, Y6
+	VADDPS       Y5, Y7, Y7
+	VMOVAPS      Y0, Y12
+	VMOVAPS      Y1, Y13
+	VBROADCASTSS number32<>+0(SB), Y14
+	VFMADD231PS  Y14, Y2, Y12
+	VFMADD231PS  Y14, Y3, Y13
+	VBROADCASTSS number33<>+0(SB), Y14
+	VFMADD231PS  Y14, Y4, Y12
+	VFMADD231PS  Y14, Y5, Y13
+	VBROADCASTSS number33<>+0(SB), Y14
+	VFMADD231PS  Y14, Y2, Y0
+	VFMADD231PS  Y14, Y3, Y1
+	VBROADCASTSS number32<>+0(SB), Y2
+	VFMADD231PS  Y2, Y4, Y0
+	VFMADD231PS  Y2, Y5, Y1
+	VBROADCASTSS number34<>+0(SB), Y2
+	VMULPS       Y2, Y10, Y3
+	VMULPS       Y2, Y11, Y2
+	VBROADCASTSS number35<>+0(SB), Y4
+	VFMADD231PS  Y4, Y8, Y3
+	VFMADD231PS  Y4, Y9, Y2
+	VBROADCASTSS number35<>+0(SB), Y4
+	VMULPS       Y4, Y10, Y5
+	VMULPS       Y4, Y11, Y4
+	VBROADCASTSS number36<>+0(SB), Y10
+	VFMADD231PS  Y10, Y8, Y5
+	VFMADD231PS  Y10, Y9, Y4
+	VADDPS       Y2, Y12, Y8
+	VSUBPS       Y3, Y13, Y9
+	VADDPS       Y4, Y0, Y10
+	VSUBPS       Y5, Y1, Y11
+	VSUBPS       Y4, Y0, Y0
+	VADDPS       Y5, Y1, Y1
+	VSUBPS       Y2, Y12, Y2
+	VADDPS       Y3, Y13, Y3
+	VMOVUPS      Y6, (AX)
+	VMOVUPS      Y7, (CX)
+	VBROADCASTSS (R11), Y4
+	VBROADCASTSS 4(R11), Y5
+	VMULPS       Y4, Y8, Y6
+	VMULPS       Y5, Y8, Y7
+	VFNMADD231PS Y5, Y9, Y6
+	VFMADD231PS  Y4, Y9, Y7
+	VMOVUPS      Y6, (AX)(DI*1)
+	VMOVUPS      Y7, (CX)(DI*1)
+	VBROADCASTSS 8(R11), Y4
+	VBROADCASTSS 12(R11), Y5
+	VMULPS       Y4, Y10, Y6
+	VMULPS       Y5, Y10, Y7
+	VFNMADD231PS Y5, Y11, Y6
+	VFMADD231PS  Y4, Y11, Y7
+	VMOVUPS      Y6, (AX)(DI*2)
+	VMOVUPS      Y7, (CX)(DI*2)
+	VBROADCASTSS 16(R11), Y4
+	VBROADCASTSS 20(R11), Y5
+	VMULPS       Y4, Y0, Y6
+	VMULPS       Y5, Y0, Y0
+	VFNMADD231PS Y5, Y1, Y6
+	VFMADD231PS  Y4, Y1, Y0
+	VMOVUPS      Y6, (AX)(R8*1)
+	VMOVUPS      Y0, (CX)(R8*1)
+	VBROADCASTSS 24(R11), Y0
+	VBROADCASTSS 28(R11), Y1
+	VMULPS       Y0, Y2, Y4
+	VMULPS       Y1, Y2, Y2
+	VFNMADD231PS Y1, Y3, Y4
+	VFMADD231PS  Y0, Y3, Y2
+	VMOVUPS      Y4, (R9)
+	VMOVUPS      Y2, (R10)
+	VMOVUPS      32(AX), Y0
+	VMOVUPS      32(CX), Y1
+	VMOVUPS      32(AX)(DI*1), Y2
+	VMOVUPS      32(CX)(DI*1), Y3
+	VMOVUPS      32(AX)(DI*2), Y4
+	VMOVUPS      32(CX)(DI*2), Y5
+	VMOVUPS      32(AX)(R8*1), Y6
+	VMOVUPS      32(CX)(R8*1), Y7
+	VMOVUPS      32(R9), Y8
+	VMOVUPS      32(R10), Y9
+	VSUBPS       Y8, Y2, Y10
+	VSUBPS       Y9, Y3, Y11
+	VADDPS       Y8, Y2, Y2
+	VADDPS       Y9, Y3, Y3
+	VSUBPS       Y6, Y4, Y8
+	VSUBPS       Y7, Y5, Y9
+	VADDPS       Y6, Y4, Y4
+	VADDPS       Y7, Y5, Y5
+	VADDPS       Y2, Y0, Y6
+	VADDPS       Y3, Y1, Y7
+	VADDPS       Y4, Y6, Y6
+	VADDPS       Y5, Y7, Y7
+	VMOVAPS      Y0, Y12
+	VMOVAPS      Y1, Y13
+	VBROADCASTSS number32<>+0(SB), Y14
+	VFMADD231PS  Y14, Y2, Y12
+	VFMADD231PS  Y14, Y3, Y13
+	VBROADCASTSS number33<>+0(SB), Y14
+	VFMADD231PS  Y14, Y4, Y12
+	VFMADD231PS  Y14, Y5, Y13
+	VBROADCASTSS number33<>+0(SB), Y14
+	VFMADD231PS  Y14, Y2, Y0
+	VFMADD231PS  Y14, Y3, Y1
+	VBROADCASTSS number32<>+0(SB), Y2
+	VFMADD231PS  Y2, Y4, Y0
+	VFMADD231PS  Y2, Y5, Y1
+	VBROADCASTSS number34<>+0(SB), Y2
+	VMULPS       Y2, Y10, Y3
+	VMULPS       Y2, Y11, Y2
+	VBROADCASTSS number35<>+0(SB), Y4
+	VFMADD231PS  Y4, Y8, Y3
+	VFMADD231PS  Y4, Y9, Y2
+	VBROADCASTSS number35<>+0(SB), Y4
+	VMULPS       Y4, Y10, Y5
+	VMULPS       Y4, Y11, Y4
+	VBROADCASTSS number36<>+0(SB), Y10
+	VFMADD231PS  Y10, Y8, Y5
+	VFMADD231PS  Y10, Y9, Y4
+	VADDPS       Y2, Y12, Y8
+	VSUBPS       Y3, Y13, Y9
+	VADDPS       Y4, Y0, Y10
+	VSUBPS       Y5, Y1, Y11
+	VSUBPS       Y4, Y0, Y0
+	VADDPS       Y5, Y1, Y1
+	VSUBPS       Y2, Y12, Y2
+	VADDPS       Y3, Y13, Y3
+	VMOVUPS      Y6, 32(AX)
+	VMOVUPS      Y7, 32(CX)
+	VBROADCASTSS (R11), Y4
+	VBROADCASTSS 4(R11), Y5
+	VMULPS       Y4, Y8, Y6
+	VMULPS       Y5, Y8, Y7
+	VFNMADD231PS Y5, Y9, Y6
+	VFMADD231PS  Y4, Y9, Y7
+	VMOVUPS      Y6, 32(AX)(DI*1)
+	VMOVUPS      Y7, 32(CX)(DI*1)
+	VBROADCASTSS 8(R11), Y4
+	VBROADCASTSS 12(R11), Y5
+	VMULPS       Y4, Y10, Y6
+	VMULPS       Y5, Y10, Y7
+	VFNMADD231PS Y5, Y11, Y6
+	VFMADD231PS  Y4, Y11, Y7
+	VMOVUPS      Y6, 32(AX)(DI*2)
+	VMOVUPS      Y7, 32(CX)(DI*2)
+	VBROADCASTSS 16(R11), Y4
+	VBROADCASTSS 20(R11), Y5
+	VMULPS       Y4, Y0, Y6
+	VMULPS       Y5, Y0, Y0
+	VFNMADD231PS Y5, Y1, Y6
+	VFMADD231PS  Y4, Y1, Y0
+	VMOVUPS      Y6, 32(AX)(R8*1)
+	VMOVUPS      Y0, 32(CX)(R8*1)
+	VBROADCASTSS 24(R11), Y0
+	VBROADCASTSS 28(R11), Y1
+	VMULPS       Y0, Y2, Y4
+	VMULPS       Y1, Y2, Y2
+	VFNMADD231PS Y1, Y3, Y4
+	VFMADD231PS  Y0, Y3, Y2
+	VMOVUPS      Y4, 32(R9)
+	VMOVUPS      Y2, 32(R10)
+	ADDQ         $0x40, AX
+	ADDQ         $0x40, CX
+	ADDQ         $0x00000020, R11
+	DECQ         R12
+	JNZ          forward5SingleAVX2next
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	DECQ         BX
+	JNZ          forward5SingleAVX2block
+	VZEROUPPER
+	RET
+
+// func backward5SingleAVX2(re *float32, im *float32, twiddle *float32, blocks int, span int)
+// Requires: AVX, FMA3
+TEXT ·backward5SingleAVX2(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ twiddle+16(FP), DX
+	MOVQ blocks+24(FP), BX
+	MOVQ span+32(FP), SI
+	MOVQ SI, DI
+	SHLQ $0x06, DI
+	LEAQ (DI)(DI*2), R8
+
+backward5SingleAVX2block:
+	MOVQ DX, R11
+	MOVQ SI, R12
+
+backward5SingleAVX2next:
+	LEAQ         (AX)(DI*4), R9
+	LEAQ         (CX)(DI*4), R10
+	VMOVUPS      (AX), Y0
+	VMOVUPS      (CX), Y1
+	VMOVUPS      (AX)(DI*1), Y2
+	VMOVUPS      (CX)(DI*1), Y3
+	VBROADCASTSS (R11), Y4
+	VBROADCASTSS 4(R11), Y5
+	VMULPS       Y4, Y2, Y6
+	VMULPS       Y4, Y3, Y4
+	VFMADD231PS  Y5, Y3, Y6
+	VFNMADD231PS Y5, Y2, Y4
+	VMOVUPS      (AX)(DI*2), Y2
+	VMOVUPS      (CX)(DI*2), Y3
+	VBROADCASTSS 8(R11), Y5
+	VBROADCASTSS 12(R11), Y7
+	VMULPS       Y5, Y2, Y8
+	VMULPS       Y5, Y3, Y5
+	VFMADD231PS  Y7, Y3, Y8
+	VFNMADD231PS Y7, Y2, Y5
+	VMOVUPS      (AX)(R8*1), Y2
+	VMOVUPS      (CX)(R8*1), Y3
+	VBROADCASTSS 16(R11), Y7
+	VBROADCASTSS 20(R11), Y9
+	VMULPS       Y7, Y2, Y10
+	VMULPS       Y7, Y3, Y7
+	VFMADD231PS  Y9, Y3, Y10
+	VFNMADD231PS Y9, Y2, Y7
+	VMOVUPS      (R9), Y2
+	VMOVUPS      (R10), Y3
+	VBROADCASTSS 24(R11), Y9
+	VBROADCASTSS 28(R11), Y11
+	VMULPS       Y9, Y2, Y12
+	VMULPS       Y9, Y3, Y9
+	VFMADD231PS  Y11, Y3, Y12
+	VFNMADD231PS Y11, Y2, Y9
+	VSUBPS       Y9, Y4, Y2
+	VSUBPS       Y12, Y6, Y3
+	VADDPS       Y9, Y4, Y4
+	VADDPS       Y12, Y6, Y6
+	VSUBPS       Y7, Y5, Y9
+	VSUBPS       Y10, Y8, Y11
+	VADDPS       Y7, Y5, Y5
+	VADDPS       Y10, Y8, Y7
+	VADDPS       Y4, Y1, Y8
+	VADDPS       Y6, Y0, Y10
+	VADDPS       Y5, Y8, Y8
+	VADDPS       Y7, Y10, Y10
+	VMOVAPS      Y1, Y12
+	VMOVAPS      Y0, Y13
+	VBROADCASTSS number32<>+0(SB), Y14
+	VFMADD231PS  Y14, Y4, Y12
+	VFMADD231PS  Y14, Y6, Y13
+	VBROADCASTSS number33<>+0(SB), Y14
+	VFMADD231PS  Y14, Y5, Y12
+	VFMADD231PS  Y14, Y7, Y13
+	VBROADCASTSS number33<>+0(SB), Y14
+	VFMADD231PS  Y14, Y4, Y1
+	VFMADD231PS  Y14, Y6, Y0
+	VBROADCASTSS number32<>+0(SB), Y4
+	VFMADD231PS  Y4, Y5, Y1
+	VFMADD231PS  Y4, Y7, Y0
+	VBROADCASTSS number34<>+0(SB), Y4
+	VMULPS       Y4, Y2, Y5
+	VMULPS       Y4, Y3, Y4
+	VBROADCASTSS number35<>+0(SB), Y6
+	VFMADD231PS  Y6, Y9, Y5
+	VFMADD231PS  Y6, Y11, Y4
+	VBROADCASTSS number35<>+0(SB), Y6
+	VMULPS       Y6, Y2, Y2
+	VMULPS       Y6, Y3, Y3
+	VBROADCASTSS number36<>+0(SB), Y6
+	VFMADD231PS  Y6, Y9, Y2
+	VFMADD231PS  Y6, Y11, Y3
+	VADDPS       Y4, Y12, Y6
+	VSUBPS       Y5, Y13, Y7
+	VADDPS       Y3, Y1, Y9
+	VSUBPS       Y2, Y0, Y11
+	VSUBPS       Y3, Y1, Y1
+	VADDPS       Y2, Y0, Y0
+	VSUBPS       Y4, Y12, Y2
+	VADDPS       Y5, Y13, Y3
+	VMOVUPS      Y10, (AX)
+	VMOVUPS      Y8, (CX)
+	VMOVUPS      Y7, (AX)(DI*1)
+	VMOVUPS      Y6, (CX)(DI*1)
+	VMOVUPS      Y11, (AX)(DI*2)
+	VMOVUPS      Y9, (CX)(DI*2)
+	VMOVUPS      Y0, (AX)(R8*1)
+	VMOVUPS      Y1, (CX)(R8*1)
+	VMOVUPS      Y3, (R9)
+	VMOVUPS      Y2, (R10)
+	VMOVUPS      32(AX), Y0
+	VMOVUPS      32(CX), Y1
+	VMOVUPS      32(AX)(DI*1), Y2
+	VMOVUPS      32(CX)(DI*1), Y3
+	VBROADCASTSS (R11), Y4
+	VBROADCASTSS 4(R11), Y5
+	VMULPS       Y4, Y2, Y6
+	VMULPS       Y4, Y3, Y4
+	VFMADD231PS  Y5, Y3, Y6
+	VFNMADD231PS Y5, Y2, Y4
+	VMOVUPS      32(AX)(DI*2), Y2
+	VMOVUPS      32(CX)(DI*2), Y3
+	VBROADCASTSS 8(R11), Y5
+	VBROADCASTSS 12(R11), Y7
+	VMULPS       Y5, Y2, Y8
+	VMULPS       Y5, Y3, Y5
+	VFMADD231PS  Y7, Y3, Y8
+	VFNMADD231PS Y7, Y2, Y5
+	VMOVUPS      32(AX)(R8*1), Y2
+	VMOVUPS      32(CX)(R8*1), Y3
+	VBROADCASTSS 16(R11), Y7
+	VBROADCASTSS 20(R11), Y9
+	VMULPS       Y7, Y2, Y10
+	VMULPS       Y7, Y3, Y7
+	VFMADD231PS  Y9, Y3, Y10
+	VFNMADD231PS Y9, Y2, Y7
+	VMOVUPS      32(R9), Y2
+	VMOVUPS      32(R10), Y3
+	VBROADCASTSS 24(R11), Y9
+	VBROADCASTSS 28(R11), Y11
+	VMULPS       Y9, Y2, Y12
+	VMULPS       Y9, Y3, Y9
+	VFMADD231PS  Y11, Y3, Y12
+	VFNMADD231PS Y11, Y2, Y9
+	VSUBPS       Y9, Y4, Y2
+	VSUBPS       Y12, Y6, Y3
+	VADDPS       Y9, Y4, Y4
+	VADDPS       Y12, Y6, Y6
+	VSUBPS       Y7, Y5, Y9
+	VSUBPS       Y10, Y8, Y11
+	VADDPS       Y7, Y5, Y5
+	VADDPS       Y10, Y8, Y7
+	VADDPS       Y4, Y1, Y8
+	VADDPS       Y6, Y0, Y10
+	VADDPS       Y5, Y8, Y8
+	VADDPS       Y7, Y10, Y10
+	VMOVAPS      Y1, Y12
+	VMOVAPS      Y0, Y13
+	VBROADCASTSS number32<>+0(SB), Y14
+	VFMADD231PS  Y14, Y4, Y12
+	VFMADD231PS  Y14, Y6, Y13
+	VBROADCASTSS number33<>+0(SB), Y14
+	VFMADD231PS  Y14, Y5, Y12
+	VFMADD231PS  Y14, Y7, Y13
+	VBROADCASTSS number33<>+0(SB), Y14
+	VFMADD231PS  Y14, Y4, Y1
+	VFMADD231PS  Y14, Y6, Y0
+	VBROADCASTSS number32<>+0(SB), Y4
+	VFMADD231PS  Y4, Y5, Y1
+	VFMADD231PS  Y4, Y7, Y0
+	VBROADCASTSS number34<>+0(SB), Y4
+	VMULPS       Y4, Y2, Y5
+	VMULPS       Y4, Y3, Y4
+	VBROADCASTSS number35<>+0(SB), Y6
+	VFMADD231PS  Y6, Y9, Y5
+	VFMADD231PS  Y6, Y11, Y4
+	VBROADCASTSS number35<>+0(SB), Y6
+	VMULPS       Y6, Y2, Y2
+	VMULPS       Y6, Y3, Y3
+	VBROADCASTSS number36<>+0(SB), Y6
+	VFMADD231PS  Y6, Y9, Y2
+	VFMADD231PS  Y6, Y11, Y3
+	VADDPS       Y4, Y12, Y6
+	VSUBPS       Y5, Y13, Y7
+	VADDPS       Y3, Y1, Y9
+	VSUBPS       Y2, Y0, Y11
+	VSUBPS       Y3, Y1, Y1
+	VADDPS       Y2, Y0, Y0
+	VSUBPS       Y4, Y12, Y2
+	VADDPS       Y5, Y13, Y3
+	VMOVUPS      Y10, 32(AX)
+	VMOVUPS      Y8, 32(CX)
+	VMOVUPS      Y7, 32(AX)(DI*1)
+	VMOVUPS      Y6, 32(CX)(DI*1)
+	VMOVUPS      Y11, 32(AX)(DI*2)
+	VMOVUPS      Y9, 32(CX)(DI*2)
+	VMOVUPS      Y0, 32(AX)(R8*1)
+	VMOVUPS      Y1, 32(CX)(R8*1)
+	VMOVUPS      Y3, 32(R9)
+	VMOVUPS      Y2, 32(R10)
+	ADDQ         $0x40, AX
+	ADDQ         $0x40, CX
+	ADDQ         $0x00000020, R11
+	DECQ         R12
+	JNZ          backward5SingleAVX2next
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	ADDQ         DI, AX
+	ADDQ         DI, CX
+	DECQ         BX
+	JNZ          backward5SingleAVX2block
+	VZEROUPPER
+	RET
+
+// func middle4SingleAVX2(re *float32, im *float32, kinRe *float32, kinIm *float32, groups int)
+// Requires: AVX, FMA3
+TEXT ·middle4SingleAVX2(SB), NOSPLIT, $0-40
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ kinRe+16(FP), DX
+	MOVQ kinIm+24(FP), BX
+	MOVQ groups+32(FP), SI
+
+middle4SingleAVX2next:
+	VMOVUPS      (AX), Y0
+	VMOVUPS      (CX), Y1
+	VMOVUPS      64(AX), Y2
+	VMOVUPS      64(CX), Y3
+	VMOVUPS      128(AX), Y4
+	VMOVUPS      128(CX), Y5
+	VMOVUPS      192(AX), Y6
+	VMOVUPS      192(CX), Y7
+	VSUBPS       Y4, Y0, Y8
+	VSUBPS       Y5, Y1, Y9
+	VADDPS       Y4, Y0, Y0
+	VADDPS       Y5, Y1, Y1
+	VSUBPS       Y6, Y2, Y4
+	VSUBPS       Y7, Y3, Y5
+	VADDPS       Y6, Y2, Y2
+	VADDPS       Y7, Y3, Y3
+	VSUBPS       Y2, Y0, Y6
+	VSUBPS       Y3, Y1, Y7
+	VADDPS       Y2, Y0, Y0
+	VADDPS       Y3, Y1, Y1
+	VADDPS       Y5, Y8, Y2
+	VSUBPS       Y4, Y9, Y3
+	VSUBPS       Y5, Y8, Y5
+	VADDPS       Y4, Y9, Y4
+	VBROADCASTSS (DX), Y8
+	VBROADCASTSS (BX), Y9
+	VMULPS       Y8, Y0, Y10
+	VMULPS       Y9, Y0, Y0
+	VFNMADD231PS Y9, Y1, Y10
+	VFMADD231PS  Y8, Y1, Y0
+	VBROADCASTSS 4(DX), Y1
+	VBROADCASTSS 4(BX), Y8
+	VMULPS       Y1, Y2, Y9
+	VMULPS       Y8, Y2, Y2
+	VFNMADD231PS Y8, Y3, Y9
+	VFMADD231PS  Y1, Y3, Y2
+	VBROADCASTSS 8(DX), Y1
+	VBROADCASTSS 8(BX), Y3
+	VMULPS       Y1, Y6, Y8
+	VMULPS       Y3, Y6, Y6
+	VFNMADD231PS Y3, Y7, Y8
+	VFMADD231PS  Y1, Y7, Y6
+	VBROADCASTSS 12(DX), Y1
+	VBROADCASTSS 12(BX), Y3
+	VMULPS       Y1, Y5, Y7
+	VMULPS       Y3, Y5, Y5
+	VFNMADD231PS Y3, Y4, Y7
+	VFMADD231PS  Y1, Y4, Y5
+	VSUBPS       Y6, Y0, Y1
+	VSUBPS       Y8, Y10, Y3
+	VADDPS       Y6, Y0, Y0
+	VADDPS       Y8, Y10, Y4
+	VSUBPS       Y5, Y2, Y6
+	VSUBPS       Y7, Y9, Y8
+	VADDPS       Y5, Y2, Y2
+	VADDPS       Y7, Y9, Y5
+	VSUBPS       Y2, Y0, Y7
+	VSUBPS       Y5, Y4, Y9
+	VADDPS       Y2, Y0, Y0
+	VADDPS       Y5, Y4, Y2
+	VADDPS       Y8, Y1, Y4
+	VSUBPS       Y6, Y3, Y5
+	VSUBPS       Y8, Y1, Y1
+	VADDPS       Y6, Y3, Y3
+	VMOVUPS      Y2, (AX)
+	VMOVUPS      Y0, (CX)
+	VMOVUPS      Y5, 64(AX)
+	VMOVUPS      Y4, 64(CX)
+	VMOVUPS      Y9, 128(AX)
+	VMOVUPS      Y7, 128(CX)
+	VMOVUPS      Y3, 192(AX)
+	VMOVUPS      Y1, 192(CX)
+	VMOVUPS      32(AX), Y0
+	VMOVUPS      32(CX), Y1
+	VMOVUPS      96(AX), Y2
+	VMOVUPS      96(CX), Y3
+	VMOVUPS      160(AX), Y4
+	VMOVUPS      160(CX), Y5
+	VMOVUPS      224(AX), Y6
+	VMOVUPS      224(CX), Y7
+	VSUBPS       Y4, Y0, Y8
+	VSUBPS       Y5, Y1, Y9
+	VADDPS       Y4, Y0, Y0
+	VADDPS       Y5, Y1, Y1
+	VSUBPS       Y6, Y2, Y4
+	VSUBPS       Y7, Y3, Y5
+	VADDPS       Y6, Y2, Y2
+	VADDPS       Y7, Y3, Y3
+	VSUBPS       Y2, Y0, Y6
+	VSUBPS       Y3, Y1, Y7
+	VADDPS       Y2, Y0, Y0
+	VADDPS       Y3, Y1, Y1
+	VADDPS       Y5, Y8, Y2
+	VSUBPS       Y4, Y9, Y3
+	VSUBPS       Y5, Y8, Y5
+	VADDPS       Y4, Y9, Y4
+	VBROADCASTSS (DX), Y8
+	VBROADCASTSS (BX), Y9
+	VMULPS       Y8, Y0, Y10
+	VMULPS       Y9, Y0, Y0
+	VFNMADD231PS Y9, Y1, Y10
+	VFMADD231PS  Y8, Y1, Y0
+	VBROADCASTSS 4(DX), Y1
+	VBROADCASTSS 4(BX), Y8
+	VMULPS       Y1, Y2, Y9
+	VMULPS       Y8, Y2, Y2
+	VFNMADD231PS Y8, Y3, Y9
+	VFMADD231PS  Y1, Y3, Y2
+	VBROADCASTSS 8(DX), Y1
+	VBROADCASTSS 8(BX), Y3
+	VMULPS       Y1, Y6, Y8
+	VMULPS       Y3, Y6, Y6
+	VFNMADD231PS Y3, Y7, Y8
+	VFMADD231PS  Y1, Y7, Y6
+	VBROADCASTSS 12(DX), Y1
+	VBROADCASTSS 12(BX), Y3
+	VMULPS       Y1, Y5, Y7
+	VMULPS       Y3, Y5, Y5
+	VFNMADD231PS Y3, Y4, Y7
+	VFMADD231PS  Y1, Y4, Y5
+	VSUBPS       Y6, Y0, Y1
+	VSUBPS       Y8, Y10, Y3
+	VADDPS       Y6, Y0, Y0
+	VADDPS       Y8, Y10, Y4
+	VSUBPS       Y5, Y2, Y6
+	VSUBPS       Y7, Y9, Y8
+	VADDPS       Y5, Y2, Y2
+	VADDPS       Y7, Y9, Y5
+	VSUBPS       Y2, Y0, Y7
+	VSUBPS       Y5, Y4, Y9
+	VADDPS       Y2, Y0, Y0
+	VADDPS       Y5, Y4, Y2
+	VADDPS       Y8, Y1, Y4
+	VSUBPS       Y6, Y3, Y5
+	VSUBPS       Y8, Y1, Y1
+	VADDPS       Y6, Y3, Y3
+	VMOVUPS      Y2, 32(AX)
+	VMOVUPS      Y0, 32(CX)
+	VMOVUPS      Y5, 96(AX)
+	VMOVUPS      Y4, 96(CX)
+	VMOVUPS      Y9, 160(AX)
+	VMOVUPS      Y7, 160(CX)
+	VMOVUPS      Y3, 224(AX)
+	VMOVUPS      Y1, 224(CX)
+	ADDQ         $0x00000100, AX
+	ADDQ         $0x00000100, CX
+	ADDQ         $0x10, DX
+	ADDQ         $0x10, BX
+	DECQ         SI
+	JNZ          middle4SingleAVX2next
+	VZEROUPPER
+	RET
+
+// func phaseCubicSingleAVX2(re *float32, im *float32, potential *float32, coupling *float32, points int)
+// Requires: AVX, AVX2, FMA3
+TEXT ·phaseCubicSingleAVX2(SB), NOSPLIT, $0-40
+	MOVQ         re+0(FP), AX
+	MOVQ         im+8(FP), CX
+	MOVQ         potential+16(FP), DX
+	MOVQ         coupling+24(FP), BX
+	MOVQ         points+32(FP), SI
+	VBROADCASTSS number38<>+0(SB), Y0
+	VBROADCASTSS number39<>+0(SB), Y0
+
+phaseCubicSingleAVX2next:
+	VMOVUPS      (AX), Y1
+	VMOVUPS      (CX), Y2
+	VMULPS       Y1, Y1, Y3
+	VFMADD231PS  Y2, Y2, Y3
+	VBROADCASTSS (BX), Y4
+	VBROADCASTSS (DX), Y5
+	VFMADD231PS  Y3, Y4, Y5
+	VADDPS       Y0, Y5, Y3
+	VSUBPS       Y0, Y3, Y4
+	VSUBPS       Y4, Y5, Y4
+	VPSLLD       $0x1f, Y3, Y3
+	VMULPS       Y4, Y4, Y5
+	VBROADCASTSS number40<>+0(SB), Y6
+	VBROADCASTSS number41<>+0(SB), Y7
+	VBROADCASTSS number42<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y6
+	VBROADCASTSS number43<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y7
+	VBROADCASTSS number44<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y6
+	VBROADCASTSS number45<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y7
+	VBROADCASTSS number46<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y6
+	VBROADCASTSS number47<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y7
+	VBROADCASTSS number48<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y6
+	VBROADCASTSS number49<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y7
+	VMULPS       Y4, Y6, Y4
+	VMULPS       Y5, Y7, Y5
+	VMOVAPS      Y1, Y6
+	VFMADD231PS  Y4, Y2, Y6
+	VFMADD231PS  Y5, Y1, Y6
+	VMOVAPS      Y2, Y7
+	VFNMADD231PS Y4, Y1, Y7
+	VFMADD231PS  Y5, Y2, Y7
+	VXORPS       Y3, Y6, Y6
+	VXORPS       Y3, Y7, Y7
+	VMOVUPS      Y6, (AX)
+	VMOVUPS      Y7, (CX)
+	VMOVUPS      32(AX), Y1
+	VMOVUPS      32(CX), Y2
+	VMULPS       Y1, Y1, Y3
+	VFMADD231PS  Y2, Y2, Y3
+	VBROADCASTSS (BX), Y4
+	VBROADCASTSS (DX), Y5
+	VFMADD231PS  Y3, Y4, Y5
+	VADDPS       Y0, Y5, Y3
+	VSUBPS       Y0, Y3, Y4
+	VSUBPS       Y4, Y5, Y4
+	VPSLLD       $0x1f, Y3, Y3
+	VMULPS       Y4, Y4, Y5
+	VBROADCASTSS number40<>+0(SB), Y6
+	VBROADCASTSS number41<>+0(SB), Y7
+	VBROADCASTSS number42<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y6
+	VBROADCASTSS number43<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y7
+	VBROADCASTSS number44<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y6
+	VBROADCASTSS number45<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y7
+	VBROADCASTSS number46<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y6
+	VBROADCASTSS number47<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y7
+	VBROADCASTSS number48<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y6
+	VBROADCASTSS number49<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y7
+	VMULPS       Y4, Y6, Y4
+	VMULPS       Y5, Y7, Y5
+	VMOVAPS      Y1, Y6
+	VFMADD231PS  Y4, Y2, Y6
+	VFMADD231PS  Y5, Y1, Y6
+	VMOVAPS      Y2, Y7
+	VFNMADD231PS Y4, Y1, Y7
+	VFMADD231PS  Y5, Y2, Y7
+	VXORPS       Y3, Y6, Y6
+	VXORPS       Y3, Y7, Y7
+	VMOVUPS      Y6, 32(AX)
+	VMOVUPS      Y7, 32(CX)
+	ADDQ         $0x40, AX
+	ADDQ         $0x40, CX
+	ADDQ         $0x04, DX
+	ADDQ         $0x04, BX
+	DECQ         SI
+	JNZ          phaseCubicSingleAVX2next
+	VZEROUPPER
+	RET
+
+// func phaseShiftedSingleAVX2(re *float32, im *float32, potential *float32, coupling *float32, density *float32, points int)
+// Requires: AVX, AVX2, FMA3
+TEXT ·phaseShiftedSingleAVX2(SB), NOSPLIT, $0-48
+	MOVQ         re+0(FP), AX
+	MOVQ         im+8(FP), CX
+	MOVQ         potential+16(FP), DX
+	MOVQ         coupling+24(FP), BX
+	MOVQ         density+32(FP), SI
+	MOVQ         points+40(FP), DI
+	VBROADCASTSS number38<>+0(SB), Y0
+	VBROADCASTSS number39<>+0(SB), Y0
+
+phaseShiftedSingleAVX2next:
+	VMOVUPS      (AX), Y1
+	VMOVUPS      (CX), Y2
+	VMULPS       Y1, Y1, Y3
+	VFMADD231PS  Y2, Y2, Y3
+	VBROADCASTSS (BX), Y4
+	VBROADCASTSS (SI), Y5
+	VSUBPS       Y5, Y3, Y3
+	VBROADCASTSS (DX), Y5
+	VFMADD231PS  Y3, Y4, Y5
+	VADDPS       Y0, Y5, Y3
+	VSUBPS       Y0, Y3, Y4
+	VSUBPS       Y4, Y5, Y4
+	VPSLLD       $0x1f, Y3, Y3
+	VMULPS       Y4, Y4, Y5
+	VBROADCASTSS number40<>+0(SB), Y6
+	VBROADCASTSS number41<>+0(SB), Y7
+	VBROADCASTSS number42<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y6
+	VBROADCASTSS number43<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y7
+	VBROADCASTSS number44<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y6
+	VBROADCASTSS number45<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y7
+	VBROADCASTSS number46<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y6
+	VBROADCASTSS number47<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y7
+	VBROADCASTSS number48<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y6
+	VBROADCASTSS number49<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y7
+	VMULPS       Y4, Y6, Y4
+	VMULPS       Y5, Y7, Y5
+	VMOVAPS      Y1, Y6
+	VFMADD231PS  Y4, Y2, Y6
+	VFMADD231PS  Y5, Y1, Y6
+	VMOVAPS      Y2, Y7
+	VFNMADD231PS Y4, Y1, Y7
+	VFMADD231PS  Y5, Y2, Y7
+	VXORPS       Y3, Y6, Y6
+	VXORPS       Y3, Y7, Y7
+	VMOVUPS      Y6, (AX)
+	VMOVUPS      Y7, (CX)
+	VMOVUPS      32(AX), Y1
+	VMOVUPS      32(CX), Y2
+	VMULPS       Y1, Y1, Y3
+	VFMADD231PS  Y2, Y2, Y3
+	VBROADCASTSS (BX), Y4
+	VBROADCASTSS (SI), Y5
+	VSUBPS       Y5, Y3, Y3
+	VBROADCASTSS (DX), Y5
+	VFMADD231PS  Y3, Y4, Y5
+	VADDPS       Y0, Y5, Y3
+	VSUBPS       Y0, Y3, Y4
+	VSUBPS       Y4, Y5, Y4
+	VPSLLD       $0x1f, Y3, Y3
+	VMULPS       Y4, Y4, Y5
+	VBROADCASTSS number40<>+0(SB), Y6
+	VBROADCASTSS number41<>+0(SB), Y7
+	VBROADCASTSS number42<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y6
+	VBROADCASTSS number43<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y7
+	VBROADCASTSS number44<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y6
+	VBROADCASTSS number45<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y7
+	VBROADCASTSS number46<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y6
+	VBROADCASTSS number47<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y7
+	VBROADCASTSS number48<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y6
+	VBROADCASTSS number49<>+0(SB), Y8
+	VFMADD213PS  Y8, Y5, Y7
+	VMULPS       Y4, Y6, Y4
+	VMULPS       Y5, Y7, Y5
+	VMOVAPS      Y1, Y6
+	VFMADD231PS  Y4, Y2, Y6
+	VFMADD231PS  Y5, Y1, Y6
+	VMOVAPS      Y2, Y7
+	VFNMADD231PS Y4, Y1, Y7
+	VFMADD231PS  Y5, Y2, Y7
+	VXORPS       Y3, Y6, Y6
+	VXORPS       Y3, Y7, Y7
+	VMOVUPS      Y6, 32(AX)
+	VMOVUPS      Y7, 32(CX)
+	ADDQ         $0x40, AX
+	ADDQ         $0x40, CX
+	ADDQ         $0x04, DX
+	ADDQ         $0x04, BX
+	ADDQ         $0x04, SI
+	DECQ         DI
+	JNZ          phaseShiftedSingleAVX2next
+	VZEROUPPER
+	RET
+
+// func phaseSwollenSingleAVX2(re *float32, im *float32, potential *float32, coupling *float32, density *float32, swelling float32, scale float32, points int)
+// Requires: AVX, AVX2, FMA3
+TEXT ·phaseSwollenSingleAVX2(SB), NOSPLIT, $0-56
+	MOVQ         re+0(FP), AX
+	MOVQ         im+8(FP), CX
+	MOVQ         potential+16(FP), DX
+	MOVQ         coupling+24(FP), BX
+	MOVQ         density+32(FP), SI
+	VBROADCASTSS swelling+40(FP), Y0
+	VBROADCASTSS scale+44(FP), Y1
+	MOVQ         points+48(FP), DI
+	VBROADCASTSS number38<>+0(SB), Y2
+	VBROADCASTSS number39<>+0(SB), Y2
+
+phaseSwollenSingleAVX2next:
+	VMOVUPS      (AX), Y3
+	VMOVUPS      (CX), Y4
+	VMULPS       Y3, Y3, Y5
+	VFMADD231PS  Y4, Y4, Y5
+	VBROADCASTSS (BX), Y6
+	VBROADCASTSS (SI), Y7
+	VSUBPS       Y7, Y5, Y5
+	VBROADCASTSS number50<>+0(SB), Y7
+	VMULPS       Y5, Y0, Y5
+	VADDPS       Y5, Y5, Y8
+	VADDPS       Y7, Y8, Y8
+	VSQRTPS      Y8, Y8
+	VBROADCASTSS number51<>+0(SB), Y9
+	VBROADCASTSS number52<>+0(SB), Y10
+	VFMADD231PS  Y10, Y5, Y9
+	VMULPS       Y5, Y9, Y9
+	VADDPS       Y8, Y7, Y7
+	VBROADCASTSS number53<>+0(SB), Y10
+	VFMADD231PS  Y10, Y5, Y7
+	VMULPS       Y8, Y7, Y5
+	VDIVPS       Y5, Y9, Y9
+	VMULPS       Y1, Y9, Y5
+	VBROADCASTSS (DX), Y7
+	VFMADD231PS  Y5, Y6, Y7
+	VADDPS       Y2, Y7, Y5
+	VSUBPS       Y2, Y5, Y6
+	VSUBPS       Y6, Y7, Y6
+	VPSLLD       $0x1f, Y5, Y5
+	VMULPS       Y6, Y6, Y7
+	VBROADCASTSS number40<>+0(SB), Y8
+	VBROADCASTSS number41<>+0(SB), Y9
+	VBROADCASTSS number42<>+0(SB), Y10
+	VFMADD213PS  Y10, Y7, Y8
+	VBROADCASTSS number43<>+0(SB), Y10
+	VFMADD213PS  Y10, Y7, Y9
+	VBROADCASTSS number44<>+0(SB), Y10
+	VFMADD213PS  Y10, Y7, Y8
+	VBROADCASTSS number45<>+0(SB), Y10
+	VFMADD213PS  Y10, Y7, Y9
+	VBROADCASTSS number46<>+0(SB), Y10
+	VFMADD213PS  Y10, Y7, Y8
+	VBROADCASTSS number47<>+0(SB), Y10
+	VFMADD213PS  Y10, Y7, Y9
+	VBROADCASTSS number48<>+0(SB), Y10
+	VFMADD213PS  Y10, Y7, Y8
+	VBROADCASTSS number49<>+0(SB), Y10
+	VFMADD213PS  Y10, Y7, Y9
+	VMULPS       Y6, Y8, Y6
+	VMULPS       Y7, Y9, Y7
+	VMOVAPS      Y3, Y8
+	VFMADD231PS  Y6, Y4, Y8
+	VFMADD231PS  Y7, Y3, Y8
+	VMOVAPS      Y4, Y9
+	VFNMADD231PS Y6, Y3, Y9
+	VFMADD231PS  Y7, Y4, Y9
+	VXORPS       Y5, Y8, Y8
+	VXORPS       Y5, Y9, Y9
+	VMOVUPS      Y8, (AX)
+	VMOVUPS      Y9, (CX)
+	VMOVUPS      32(AX), Y3
+	VMOVUPS      32(CX), Y4
+	VMULPS       Y3, Y3, Y5
+	VFMADD231PS  Y4, Y4, Y5
+	VBROADCASTSS (BX), Y6
+	VBROADCASTSS (SI), Y7
+	VSUBPS       Y7, Y5, Y5
+	VBROADCASTSS number50<>+0(SB), Y7
+	VMULPS       Y5, Y0, Y5
+	VADDPS       Y5, Y5, Y8
+	VADDPS       Y7, Y8, Y8
+	VSQRTPS      Y8, Y8
+	VBROADCASTSS number51<>+0(SB), Y9
+	VBROADCASTSS number52<>+0(SB), Y10
+	VFMADD231PS  Y10, Y5, Y9
+	VMULPS       Y5, Y9, Y9
+	VADDPS       Y8, Y7, Y7
+	VBROADCASTSS number53<>+0(SB), Y10
+	VFMADD231PS  Y10, Y5, Y7
+	VMULPS       Y8, Y7, Y5
+	VDIVPS       Y5, Y9, Y9
+	VMULPS       Y1, Y9, Y5
+	VBROADCASTSS (DX), Y7
+	VFMADD231PS  Y5, Y6, Y7
+	VADDPS       Y2, Y7, Y5
+	VSUBPS       Y2, Y5, Y6
+	VSUBPS       Y6, Y7, Y6
+	VPSLLD       $0x1f, Y5, Y5
+	VMULPS       Y6, Y6, Y7
+	VBROADCASTSS number40<>+0(SB), Y8
+	VBROADCASTSS number41<>+0(SB), Y9
+	VBROADCASTSS number42<>+0(SB), Y10
+	VFMADD213PS  Y10, Y7, Y8
+	VBROADCASTSS number43<>+0(SB), Y10
+	VFMADD213PS  Y10, Y7, Y9
+	VBROADCASTSS number44<>+0(SB), Y10
+	VFMADD213PS  Y10, Y7, Y8
+	VBROADCASTSS number45<>+0(SB), Y10
+	VFMADD213PS  Y10, Y7, Y9
+	VBROADCASTSS number46<>+0(SB), Y10
+	VFMADD213PS  Y10, Y7, Y8
+	VBROADCASTSS number47<>+0(SB), Y10
+	VFMADD213PS  Y10, Y7, Y9
+	VBROADCASTSS number48<>+0(SB), Y10
+	VFMADD213PS  Y10, Y7, Y8
+	VBROADCASTSS number49<>+0(SB), Y10
+	VFMADD213PS  Y10, Y7, Y9
+	VMULPS       Y6, Y8, Y6
+	VMULPS       Y7, Y9, Y7
+	VMOVAPS      Y3, Y8
+	VFMADD231PS  Y6, Y4, Y8
+	VFMADD231PS  Y7, Y3, Y8
+	VMOVAPS      Y4, Y9
+	VFNMADD231PS Y6, Y3, Y9
+	VFMADD231PS  Y7, Y4, Y9
+	VXORPS       Y5, Y8, Y8
+	VXORPS       Y5, Y9, Y9
+	VMOVUPS      Y8, 32(AX)
+	VMOVUPS      Y9, 32(CX)
+	ADDQ         $0x40, AX
+	ADDQ         $0x40, CX
+	ADDQ         $0x04, DX
+	ADDQ         $0x04, BX
+	ADDQ         $0x04, SI
+	DECQ         DI
+	JNZ          phaseSwollenSingleAVX2next
+	VZEROUPPER
+	RET
+
+// func dampSingleAVX2(re *float32, im *float32, d *float32, points int)
+// Requires: AVX
+TEXT ·dampSingleAVX2(SB), NOSPLIT, $0-32
+	MOVQ re+0(FP), AX
+	MOVQ im+8(FP), CX
+	MOVQ d+16(FP), DX
+	MOVQ points+24(FP), BX
+
+dampSingleAVX2next:
+	VBROADCASTSS (DX), Y0
+	VMOVUPS      (AX), Y1
+	VMULPS       Y1, Y0, Y1
+	VMOVUPS      Y1, (AX)
+	VMOVUPS      (CX), Y1
+	VMULPS       Y1, Y0, Y1
+	VMOVUPS      Y1, (CX)
+	VMOVUPS      32(AX), Y1
+	VMULPS       Y1, Y0, Y1
+	VMOVUPS      Y1, 32(AX)
+	VMOVUPS      32(CX), Y1
+	VMULPS       Y1, Y0, Y0
+	VMOVUPS      Y0, 32(CX)
+	ADDQ         $0x40, AX
+	ADDQ         $0x40, CX
+	ADDQ         $0x04, DX
+	DECQ         BX
+	JNZ          dampSingleAVX2next
 	VZEROUPPER
 	RET

@@ -12,17 +12,17 @@ const (
 )
 
 // turn multiplies (xr, xi) by (wr, wi).
-func turn(xr, xi, wr, wi float64) (float64, float64) {
+func turn[T Float](xr, xi, wr, wi T) (T, T) {
 	return xr*wr - xi*wi, xr*wi + xi*wr
 }
 
 // unturn multiplies (xr, xi) by the conjugate of (wr, wi).
-func unturn(xr, xi, wr, wi float64) (float64, float64) {
+func unturn[T Float](xr, xi, wr, wi T) (T, T) {
 	return xr*wr + xi*wi, xi*wr - xr*wi
 }
 
 // forward3 does one forward pass of radix 3.
-func forward3(re, im []float64, p *pass) {
+func forward3[T Float](re, im []T, p *pass[T]) {
 	rs, ms, n := rows(re), rows(im), p.span
 	for block := 0; block < len(rs); block += 3 * n {
 		rs0, ms0 := rs[block:][:n], ms[block:][:n]
@@ -30,7 +30,7 @@ func forward3(re, im []float64, p *pass) {
 		rs2, ms2 := rs[block+2*n:][:n], ms[block+2*n:][:n]
 		tw := p.twiddle
 		for j := range n {
-			w := (*[4]float64)(tw)
+			w := (*[4]T)(tw)
 			tw = tw[4:]
 			r0, m0 := &rs0[j], &ms0[j]
 			r1, m1 := &rs1[j], &ms1[j]
@@ -49,7 +49,7 @@ func forward3(re, im []float64, p *pass) {
 }
 
 // backward3 undoes forward3, up to the factor 3.
-func backward3(re, im []float64, p *pass) {
+func backward3[T Float](re, im []T, p *pass[T]) {
 	rs, ms, n := rows(re), rows(im), p.span
 	for block := 0; block < len(rs); block += 3 * n {
 		rs0, ms0 := rs[block:][:n], ms[block:][:n]
@@ -57,7 +57,7 @@ func backward3(re, im []float64, p *pass) {
 		rs2, ms2 := rs[block+2*n:][:n], ms[block+2*n:][:n]
 		tw := p.twiddle
 		for j := range n {
-			w := (*[4]float64)(tw)
+			w := (*[4]T)(tw)
 			tw = tw[4:]
 			r0, m0 := &rs0[j], &ms0[j]
 			r1, m1 := &rs1[j], &ms1[j]
@@ -78,7 +78,7 @@ func backward3(re, im []float64, p *pass) {
 }
 
 // forward5 does one forward pass of radix 5.
-func forward5(re, im []float64, p *pass) {
+func forward5[T Float](re, im []T, p *pass[T]) {
 	rs, ms, n := rows(re), rows(im), p.span
 	for block := 0; block < len(rs); block += 5 * n {
 		rs0, ms0 := rs[block:][:n], ms[block:][:n]
@@ -88,7 +88,7 @@ func forward5(re, im []float64, p *pass) {
 		rs4, ms4 := rs[block+4*n:][:n], ms[block+4*n:][:n]
 		tw := p.twiddle
 		for j := range n {
-			w := (*[8]float64)(tw)
+			w := (*[8]T)(tw)
 			tw = tw[8:]
 			r0, m0 := &rs0[j], &ms0[j]
 			r1, m1 := &rs1[j], &ms1[j]
@@ -115,7 +115,7 @@ func forward5(re, im []float64, p *pass) {
 }
 
 // backward5 undoes forward5, up to the factor 5.
-func backward5(re, im []float64, p *pass) {
+func backward5[T Float](re, im []T, p *pass[T]) {
 	rs, ms, n := rows(re), rows(im), p.span
 	for block := 0; block < len(rs); block += 5 * n {
 		rs0, ms0 := rs[block:][:n], ms[block:][:n]
@@ -125,7 +125,7 @@ func backward5(re, im []float64, p *pass) {
 		rs4, ms4 := rs[block+4*n:][:n], ms[block+4*n:][:n]
 		tw := p.twiddle
 		for j := range n {
-			w := (*[8]float64)(tw)
+			w := (*[8]T)(tw)
 			tw = tw[8:]
 			r0, m0 := &rs0[j], &ms0[j]
 			r1, m1 := &rs1[j], &ms1[j]

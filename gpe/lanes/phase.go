@@ -9,12 +9,13 @@ import "tailrace/gpe/fluid"
 // Phases are in units of π: for a sub-step dt, v is the potential times dt/π
 // and g the coupling times dt/π. Both have length N and are shared by all
 // lanes. The factor is accurate to 5e-16 for the phase as computed, which must
-// stay below 2^51 in size. It does not allocate.
-func Phase(b *Batch, v, g []float64) {
+// stay below 2^51 in size; in single precision to 2e-7, below 2^22. It does not
+// allocate.
+func Phase[T Float](b *BatchOf[T], v, g []T) {
 	b.check()
 	checkLength("potential", len(v), b.N)
 	checkLength("coupling", len(g), b.N)
-	active.phaseCubic(b.Re, b.Im, v, g)
+	of[T](active).phaseCubic(b.Re, b.Im, v, g)
 }
 
 // PhaseLaw multiplies each lane by its local phase under any law f,
@@ -25,22 +26,22 @@ func Phase(b *Batch, v, g []float64) {
 // applied (that of the noise in symmetric order), of length N and shared by
 // all lanes. Where the swollen law has no value, 2η(|ψ_j|² − s_j) < −1, the
 // result is NaN; 2ηs_j < 1 excludes that.
-func PhaseLaw(b *Batch, v, g, s []float64, law fluid.Law) {
+func PhaseLaw[T Float](b *BatchOf[T], v, g, s []T, law fluid.Law) {
 	b.check()
 	checkLength("potential", len(v), b.N)
 	checkLength("coupling", len(g), b.N)
 	checkLength("subtracted density", len(s), b.N)
 	if eta := law.Swelling(); eta > 0 {
-		active.phaseSwollen(b.Re, b.Im, v, g, s, eta, law.Scale())
+		of[T](active).phaseSwollen(b.Re, b.Im, v, g, s, T(eta), T(law.Scale()))
 	} else {
-		active.phaseShifted(b.Re, b.Im, v, g, s)
+		of[T](active).phaseShifted(b.Re, b.Im, v, g, s)
 	}
 }
 
 // Damp multiplies point j of every lane by the real number d[j]; d has length
 // N. It serves absorbing regions.
-func Damp(b *Batch, d []float64) {
+func Damp[T Float](b *BatchOf[T], d []T) {
 	b.check()
 	checkLength("damping", len(d), b.N)
-	active.damp(b.Re, b.Im, d)
+	of[T](active).damp(b.Re, b.Im, d)
 }

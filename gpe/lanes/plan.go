@@ -22,7 +22,7 @@ func (e *LengthError) Error() string {
 	return fmt.Sprintf("lanes: no transform of length %d: %s; the nearest are %d and %d", e.N, allowed, e.Below, e.Above)
 }
 
-// Plan is the in-place transform of one length for all lanes of a batch. It is
+// PlanOf is the in-place transform of one length for all lanes of a batch. It is
 // read-only after NewPlan and may be used from any number of goroutines.
 //
 // The forward transform decimates in frequency and leaves its result where it
@@ -30,74 +30,85 @@ func (e *LengthError) Error() string {
 // the scrambled order and ends in natural order. What happens between them in
 // a split step is a multiplication by a table, for which any order is as good
 // as another: nothing is ever reordered.
-type Plan struct {
+type PlanOf[T Float] struct {
 	n      int
-	kernel *kernel
-	passes []pass // forward order; backward runs from the last to the first
+	sweeps *sweeps[T]
+	passes []pass[T] // forward order; backward runs from the last to the first
 	order  []int
 }
 
+// Plan transforms batches in double precision, SinglePlan in single.
+type (
+	Plan       = PlanOf[float64]
+	SinglePlan = PlanOf[float32]
+)
+
 // A pass is one sweep of butterflies. It works on blocks of radix·span points;
 // leg q of butterfly j in a block is point q·span + j.
-type pass struct {
+type pass[T Float] struct {
 	radix, span int
 	// twiddle holds for each j < span the radix−1 factors exp(−2πi jq/(radix·span)),
 	// q = 1, …, radix−1, as pairs re, im. The backward pass conjugates them.
-	twiddle []float64
+	twiddle []T
 }
 
 // NewPlan returns the plan of length n = 2^a, 3·2^a or 5·2^a with a ≥ 4 and
 // n ≤ 2^24. For any other length it returns a *LengthError that names the
 // nearest allowed ones.
-func NewPlan(n int) (*Plan, error) { return newPlan(n, active) }
+func NewPlan(n int) (*Plan, error) { return newPlan[float64](n, active) }
 
-func newPlan(n int, k *kernel) (*Plan, error) {
+// NewSinglePlan is NewPlan for single precision, in which twiddles are float64
+// rounded to float32.
+func NewSinglePlan(n int) (*SinglePlan, error) { return newPlan[float32](n, active) }
+
+func newPlan[T Float](n int, k *kernel) (*PlanOf[T], error) {
 	lead, power, ok := factor(n)
 	if !ok {
 		return nil, nearest(n)
 	}
-	radices := k.radices(power)
+	s := of[T](k)
+	radices := s.radices(power)
 	if lead > 1 {
 		radices = append([]int{lead}, radices...)
 	}
-	p := &Plan{n: n, kernel: k, order: scrambled(radices)}
+	p := &PlanOf[T]{n: n, sweeps: s, order: scrambled(radices)}
 	span := n
 	for _, r := range radices {
 		span /= r
-		p.passes = append(p.passes, pass{radix: r, span: span, twiddle: twiddles(r, span)})
+		p.passes = append(p.passes, newPass[T](r, span, s.rows))
 	}
 	return p, nil
 }
 
 // Len returns the length N of the transform.
-func (p *Plan) Len() int { return p.n }
+func (p *PlanOf[T]) Len() int { return p.n }
 
 // Order returns a new slice that tells the wave index k in 0, …, N−1 that each
 // scrambled place holds after Forward.
-func (p *Plan) Order() []int { return append([]int(nil), p.order...) }
+func (p *PlanOf[T]) Order() []int { return append([]int(nil), p.order...) }
 
 // Forward replaces each lane x by X_k = Σ_j x_j exp(−2πi jk/N), in scrambled
 // order: place s holds k = Order()[s].
-func (p *Plan) Forward(b *Batch) {
+func (p *PlanOf[T]) Forward(b *BatchOf[T]) {
 	p.check(b)
 	for i := range p.passes {
 		q := &p.passes[i]
-		p.kernel.forward[q.radix](b.Re, b.Im, q)
+		p.sweeps.forward[q.radix](b.Re, b.Im, q)
 	}
 }
 
 // Backward replaces each lane X, in scrambled order, by
 // x_j = Σ_k X_k exp(+2πi jk/N) in natural order. It is not normalised:
 // Backward after Forward multiplies by N.
-func (p *Plan) Backward(b *Batch) {
+func (p *PlanOf[T]) Backward(b *BatchOf[T]) {
 	p.check(b)
 	for i := len(p.passes) - 1; i >= 0; i-- {
 		q := &p.passes[i]
-		p.kernel.backward[q.radix](b.Re, b.Im, q)
+		p.sweeps.backward[q.radix](b.Re, b.Im, q)
 	}
 }
 
-func (p *Plan) check(b *Batch) {
+func (p *PlanOf[T]) check(b *BatchOf[T]) {
 	b.check()
 	if b.N != p.n {
 		panic(fmt.Sprintf("lanes: plan of length %d used on a batch of %d points", p.n, b.N))
@@ -151,17 +162,19 @@ func scrambled(radices []int) []int {
 	return order
 }
 
-func twiddles(radix, span int) []float64 {
-	t := aligned(2 * (radix - 1) * span)
+// newPass returns the pass of a radix on blocks of radix·span points, each so
+// many rows.
+func newPass[T Float](radix, span, rows int) pass[T] {
+	p := pass[T]{radix: radix, span: span * rows, twiddle: aligned[T](2 * (radix - 1) * span * rows)}
 	i := 0
-	for j := 0; j < span; j++ {
+	for j := 0; j < span*rows; j++ {
 		for q := 1; q < radix; q++ {
-			c, s := circle(j*q, radix*span)
-			t[i], t[i+1] = c, -s
+			c, s := circle(j/rows*q, radix*span)
+			p.twiddle[i], p.twiddle[i+1] = T(c), T(-s)
 			i += 2
 		}
 	}
-	return t
+	return p
 }
 
 // circle returns cos and sin of 2πk/n. The angle is folded into the first

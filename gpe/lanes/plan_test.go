@@ -18,7 +18,7 @@ import (
 var eights = func() kernel {
 	k := portable
 	k.name = "portable, radix 8"
-	k.radices = func(a int) []int {
+	k.double.radices = func(a int) []int {
 		var r []int
 		for a > 3 && a != 4 {
 			r = append(r, 8)
@@ -32,6 +32,7 @@ var eights = func() kernel {
 		}
 		return append(r, 8)
 	}
+	k.single.radices = k.double.radices
 	return k
 }()
 
@@ -84,7 +85,7 @@ func eachPlan(t *testing.T, lengths []int, test func(*testing.T, *Plan)) {
 		for _, n := range lengths {
 			t.Run(fmt.Sprintf("%s/%d", k.name, n), func(t *testing.T) {
 				defer use(k)()
-				p, err := newPlan(n, k)
+				p, err := newPlan[float64](n, k)
 				if err != nil {
 					t.Fatal(err)
 				}

@@ -2,7 +2,7 @@ package lanes
 
 // forward4 does one forward pass of radix 4. Legs come in natural order; leg q
 // leaves as sum over the legs with weights (−i)^{pq}, times its twiddle.
-func forward4(re, im []float64, p *pass) {
+func forward4[T Float](re, im []T, p *pass[T]) {
 	rs, ms, n := rows(re), rows(im), p.span
 	for block := 0; block < len(rs); block += 4 * n {
 		rs0, ms0 := rs[block:][:n], ms[block:][:n]
@@ -11,7 +11,7 @@ func forward4(re, im []float64, p *pass) {
 		rs3, ms3 := rs[block+3*n:][:n], ms[block+3*n:][:n]
 		tw := p.twiddle
 		for j := range n {
-			w := (*[6]float64)(tw)
+			w := (*[6]T)(tw)
 			tw = tw[6:]
 			w1r, w1i, w2r, w2i, w3r, w3i := w[0], w[1], w[2], w[3], w[4], w[5]
 			r0, m0 := &rs0[j], &ms0[j]
@@ -36,7 +36,7 @@ func forward4(re, im []float64, p *pass) {
 }
 
 // backward4 undoes forward4, up to the factor 4.
-func backward4(re, im []float64, p *pass) {
+func backward4[T Float](re, im []T, p *pass[T]) {
 	rs, ms, n := rows(re), rows(im), p.span
 	for block := 0; block < len(rs); block += 4 * n {
 		rs0, ms0 := rs[block:][:n], ms[block:][:n]
@@ -45,7 +45,7 @@ func backward4(re, im []float64, p *pass) {
 		rs3, ms3 := rs[block+3*n:][:n], ms[block+3*n:][:n]
 		tw := p.twiddle
 		for j := range n {
-			w := (*[6]float64)(tw)
+			w := (*[6]T)(tw)
 			tw = tw[6:]
 			w1r, w1i, w2r, w2i, w3r, w3i := w[0], w[1], w[2], w[3], w[4], w[5]
 			r0, m0 := &rs0[j], &ms0[j]

@@ -8,7 +8,7 @@ import "math"
 const half = math.Sqrt2 / 2
 
 // forward8 does one forward pass of radix 8.
-func forward8(re, im []float64, p *pass) {
+func forward8[T Float](re, im []T, p *pass[T]) {
 	rs, ms, n := rows(re), rows(im), p.span
 	for block := 0; block < len(rs); block += 8 * n {
 		rs0, ms0 := rs[block:][:n], ms[block:][:n]
@@ -21,7 +21,7 @@ func forward8(re, im []float64, p *pass) {
 		rs7, ms7 := rs[block+7*n:][:n], ms[block+7*n:][:n]
 		tw := p.twiddle
 		for j := range n {
-			w := (*[14]float64)(tw)
+			w := (*[14]T)(tw)
 			tw = tw[14:]
 			r0, m0 := &rs0[j], &ms0[j]
 			r1, m1 := &rs1[j], &ms1[j]
@@ -70,7 +70,7 @@ func forward8(re, im []float64, p *pass) {
 }
 
 // backward8 undoes forward8, up to the factor 8.
-func backward8(re, im []float64, p *pass) {
+func backward8[T Float](re, im []T, p *pass[T]) {
 	rs, ms, n := rows(re), rows(im), p.span
 	for block := 0; block < len(rs); block += 8 * n {
 		rs0, ms0 := rs[block:][:n], ms[block:][:n]
@@ -83,7 +83,7 @@ func backward8(re, im []float64, p *pass) {
 		rs7, ms7 := rs[block+7*n:][:n], ms[block+7*n:][:n]
 		tw := p.twiddle
 		for j := range n {
-			w := (*[14]float64)(tw)
+			w := (*[14]T)(tw)
 			tw = tw[14:]
 			r0, m0 := &rs0[j], &ms0[j]
 			r1, m1 := &rs1[j], &ms1[j]

@@ -49,7 +49,7 @@ func TestHundredStepsAgainstReference(t *testing.T) {
 		for _, k := range available {
 			t.Run(fmt.Sprintf("%s/swelling %g", k.name, law.Swelling()), func(t *testing.T) {
 				defer use(k)()
-				p, err := newPlan(n, k)
+				p, err := newPlan[float64](n, k)
 				if err != nil {
 					t.Fatal(err)
 				}

@@ -17,7 +17,7 @@ func NewUpdater(n int) *Updater {
 	if n <= 0 {
 		panic(fmt.Sprintf("lanes: an updater of %d columns", n))
 	}
-	return &Updater{n: n, tiles: aligned(2 * side * side)}
+	return &Updater{n: n, tiles: aligned[float64](2 * side * side)}
 }
 
 // side is the side of a tile of the product.
@@ -37,7 +37,7 @@ func (u *Updater) Add(c []float64, stride int, a []float64) {
 	}
 	count := (u.n + side - 1) / side
 	if need := (count + 1) * rows * side; len(u.panels) < need {
-		u.panels = aligned(need)
+		u.panels = aligned[float64](need)
 	}
 	u.pack(a, rows, count)
 	size := rows * side

@@ -18,38 +18,65 @@ func vectorKernels() (k []*kernel) {
 }
 
 // wide holds a point of all lanes in one register of AVX-512; narrow in two of
-// AVX2. Both take the leading passes of lengths 3·2^a and 5·2^a from the
-// portable kernel.
+// AVX2.
 var wide = kernel{
-	name:         "avx512",
-	radices:      wideRadices,
-	forward:      [maxRadix + 1]passFunc{2: twiddled(forward2AVX512), 3: forward3, 4: twiddled(forward4AVX512), 5: forward5, 8: twiddled(forward8AVX512)},
-	backward:     [maxRadix + 1]passFunc{2: twiddled(backward2AVX512), 3: backward3, 4: twiddled(backward4AVX512), 5: backward5, 8: twiddled(backward8AVX512)},
-	middle:       [maxRadix + 1]middleFunc{4: grouped(middle4AVX512, 4), 8: grouped(middle8AVX512, 8)},
-	phaseCubic:   cubicPhase(phaseCubicAVX512),
-	phaseShifted: shiftedPhase(phaseShiftedAVX512),
-	phaseSwollen: swollenPhase(phaseSwollenAVX512),
-	damp:         damping(dampAVX512),
-	mix:          mix,
-	combine:      combining(combineAVX512),
-	tiles:        tiling(tileAVX512),
-	tilesAtOnce:  2,
+	name: "avx512",
+	double: sweeps[float64]{
+		radices:      wideRadices,
+		forward:      [maxRadix + 1]passFunc[float64]{2: twiddled(forward2AVX512), 3: twiddled(forward3AVX512), 4: twiddled(forward4AVX512), 5: twiddled(forward5AVX512), 8: twiddled(forward8AVX512)},
+		backward:     [maxRadix + 1]passFunc[float64]{2: twiddled(backward2AVX512), 3: twiddled(backward3AVX512), 4: twiddled(backward4AVX512), 5: twiddled(backward5AVX512), 8: twiddled(backward8AVX512)},
+		rows:         1,
+		middle:       [maxRadix + 1]middleFunc[float64]{4: grouped(middle4AVX512, 4), 8: grouped(middle8AVX512, 8)},
+		phaseCubic:   cubicPhase(phaseCubicAVX512),
+		phaseShifted: shiftedPhase(phaseShiftedAVX512),
+		phaseSwollen: swollenPhase(phaseSwollenAVX512),
+		damp:         damping(dampAVX512),
+	},
+	single: sweeps[float32]{
+		radices:      wideRadices,
+		forward:      [maxRadix + 1]passFunc[float32]{2: twiddled(forward2SingleAVX512), 3: twiddled(forward3SingleAVX512), 4: twiddled(forward4SingleAVX512), 5: twiddled(forward5SingleAVX512), 8: twiddled(forward8SingleAVX512)},
+		backward:     [maxRadix + 1]passFunc[float32]{2: twiddled(backward2SingleAVX512), 3: twiddled(backward3SingleAVX512), 4: twiddled(backward4SingleAVX512), 5: twiddled(backward5SingleAVX512), 8: twiddled(backward8SingleAVX512)},
+		rows:         1,
+		middle:       [maxRadix + 1]middleFunc[float32]{4: grouped(middle4SingleAVX512, 4), 8: grouped(middle8SingleAVX512, 8)},
+		phaseCubic:   cubicPhase(phaseCubicSingleAVX512),
+		phaseShifted: shiftedPhase(phaseShiftedSingleAVX512),
+		phaseSwollen: swollenPhase(phaseSwollenSingleAVX512),
+		damp:         damping(dampSingleAVX512),
+	},
+	mix:         mixing(mixAVX512),
+	combine:     combining(combineAVX512),
+	tiles:       tiling(tileAVX512),
+	tilesAtOnce: 2,
 }
 
 var narrow = kernel{
-	name:         "avx2",
-	radices:      narrowRadices,
-	forward:      [maxRadix + 1]passFunc{2: twiddled(forward2AVX2), 3: forward3, 4: twiddled(forward4AVX2), 5: forward5},
-	backward:     [maxRadix + 1]passFunc{2: twiddled(backward2AVX2), 3: backward3, 4: twiddled(backward4AVX2), 5: backward5},
-	middle:       [maxRadix + 1]middleFunc{4: grouped(middle4AVX2, 4)},
-	phaseCubic:   cubicPhase(phaseCubicAVX2),
-	phaseShifted: shiftedPhase(phaseShiftedAVX2),
-	phaseSwollen: swollenPhase(phaseSwollenAVX2),
-	damp:         damping(dampAVX2),
-	mix:          mix,
-	combine:      combining(combineAVX2),
-	tiles:        tiling(tileAVX2),
-	tilesAtOnce:  1,
+	name: "avx2",
+	double: sweeps[float64]{
+		radices:      narrowRadices,
+		forward:      [maxRadix + 1]passFunc[float64]{2: twiddled(forward2AVX2), 3: twiddled(forward3AVX2), 4: twiddled(forward4AVX2), 5: twiddled(forward5AVX2)},
+		backward:     [maxRadix + 1]passFunc[float64]{2: twiddled(backward2AVX2), 3: twiddled(backward3AVX2), 4: twiddled(backward4AVX2), 5: twiddled(backward5AVX2)},
+		rows:         1,
+		middle:       [maxRadix + 1]middleFunc[float64]{4: grouped(middle4AVX2, 4)},
+		phaseCubic:   cubicPhase(phaseCubicAVX2),
+		phaseShifted: shiftedPhase(phaseShiftedAVX2),
+		phaseSwollen: swollenPhase(phaseSwollenAVX2),
+		damp:         damping(dampAVX2),
+	},
+	single: sweeps[float32]{
+		radices:      narrowRadices,
+		forward:      [maxRadix + 1]passFunc[float32]{2: twiddled(forward2SingleAVX2), 3: twiddled(forward3SingleAVX2), 4: twiddled(forward4SingleAVX2), 5: twiddled(forward5SingleAVX2)},
+		backward:     [maxRadix + 1]passFunc[float32]{2: twiddled(backward2SingleAVX2), 3: twiddled(backward3SingleAVX2), 4: twiddled(backward4SingleAVX2), 5: twiddled(backward5SingleAVX2)},
+		rows:         1,
+		middle:       [maxRadix + 1]middleFunc[float32]{4: grouped(middle4SingleAVX2, 4)},
+		phaseCubic:   cubicPhase(phaseCubicSingleAVX2),
+		phaseShifted: shiftedPhase(phaseShiftedSingleAVX2),
+		phaseSwollen: swollenPhase(phaseSwollenSingleAVX2),
+		damp:         damping(dampSingleAVX2),
+	},
+	mix:         mixing(mixAVX2),
+	combine:     combining(combineAVX2),
+	tiles:       tiling(tileAVX2),
+	tilesAtOnce: 1,
 }
 
 // wideRadices uses as many 8 as there are, with the 4 in between.
@@ -82,34 +109,38 @@ func narrowRadices(a int) []int {
 	return r
 }
 
-func twiddled(f func(re, im, twiddle *float64, blocks, span int)) passFunc {
-	return func(re, im []float64, p *pass) {
-		f(&re[0], &im[0], &p.twiddle[0], len(re)/(Width*p.radix*p.span), p.span)
+func twiddled[T Float](f func(re, im, twiddle *T, blocks, span int)) passFunc[T] {
+	return func(re, im []T, p *pass[T]) {
+		f(&re[0], &im[0], &p.twiddle[0], len(re)/(width[T]()*p.radix*p.span), p.span)
 	}
 }
 
-func grouped(f func(re, im, kinRe, kinIm *float64, groups int), radix int) middleFunc {
-	return func(re, im, kinRe, kinIm []float64) {
-		f(&re[0], &im[0], &kinRe[0], &kinIm[0], len(re)/(Width*radix))
+func grouped[T Float](f func(re, im, kinRe, kinIm *T, groups int), radix int) middleFunc[T] {
+	return func(re, im, kinRe, kinIm []T) {
+		f(&re[0], &im[0], &kinRe[0], &kinIm[0], len(kinRe)/radix)
 	}
 }
 
-func cubicPhase(f func(re, im, v, g *float64, points int)) func(re, im, v, g []float64) {
-	return func(re, im, v, g []float64) { f(&re[0], &im[0], &v[0], &g[0], len(v)) }
+func cubicPhase[T Float](f func(re, im, v, g *T, points int)) func(re, im, v, g []T) {
+	return func(re, im, v, g []T) { f(&re[0], &im[0], &v[0], &g[0], len(v)) }
 }
 
-func shiftedPhase(f func(re, im, v, g, s *float64, points int)) func(re, im, v, g, s []float64) {
-	return func(re, im, v, g, s []float64) { f(&re[0], &im[0], &v[0], &g[0], &s[0], len(v)) }
+func shiftedPhase[T Float](f func(re, im, v, g, s *T, points int)) func(re, im, v, g, s []T) {
+	return func(re, im, v, g, s []T) { f(&re[0], &im[0], &v[0], &g[0], &s[0], len(v)) }
 }
 
-func swollenPhase(f func(re, im, v, g, s *float64, swelling, scale float64, points int)) func(re, im, v, g, s []float64, swelling, scale float64) {
-	return func(re, im, v, g, s []float64, swelling, scale float64) {
+func swollenPhase[T Float](f func(re, im, v, g, s *T, swelling, scale T, points int)) func(re, im, v, g, s []T, swelling, scale T) {
+	return func(re, im, v, g, s []T, swelling, scale T) {
 		f(&re[0], &im[0], &v[0], &g[0], &s[0], swelling, scale, len(v))
 	}
 }
 
-func damping(f func(re, im, d *float64, points int)) func(re, im, d []float64) {
-	return func(re, im, d []float64) { f(&re[0], &im[0], &d[0], len(d)) }
+func damping[T Float](f func(re, im, d *T, points int)) func(re, im, d []T) {
+	return func(re, im, d []T) { f(&re[0], &im[0], &d[0], len(d)) }
+}
+
+func mixing(f func(re, im, matrix *float64, points int)) func(re, im, matrix []float64) {
+	return func(re, im, matrix []float64) { f(&re[0], &im[0], &matrix[0], len(matrix)/4) }
 }
 
 // together is how many points the assembly combines at a time.

@@ -37,21 +37,24 @@ func (m machine) dft8(x []z, half vec) []z {
 	e3 := z{m.sub(d3.im, d3.re), m.add(d3.re, d3.im)} // the imaginary part with the other sign
 	u := z{m.add(e1.re, e3.re), m.sub(e1.im, e3.im)}
 	w := z{m.sub(e1.re, e3.re), m.add(e1.im, e3.im)}
-	copyOf := func(v vec) vec { c := m.reg(); move(v, c); return c }
-	y5 := z{minus(copyOf(a.re), u.re, half), minus(copyOf(a.im), u.im, half)}
-	y1 := z{plus(a.re, u.re, half), plus(a.im, u.im, half)}
-	y7 := z{minus(copyOf(b.re), w.im, half), plus(copyOf(b.im), w.re, half)}
-	y3 := z{plus(b.re, w.im, half), minus(b.im, w.re, half)}
+	y5 := z{m.minus(m.copy(a.re), u.re, half), m.minus(m.copy(a.im), u.im, half)}
+	y1 := z{m.plus(a.re, u.re, half), m.plus(a.im, u.im, half)}
+	y7 := z{m.minus(m.copy(b.re), w.im, half), m.plus(m.copy(b.im), w.re, half)}
+	y3 := z{m.plus(b.re, w.im, half), m.minus(b.im, w.re, half)}
 	return []z{even[0], y1, even[1], y3, even[2], y5, even[3], y7}
 }
 
-// dft returns the transform of 2, 4 or 8 numbers.
+// dft returns the transform of 2, 3, 4, 5 or 8 numbers.
 func (m machine) dft(x []z, half vec) []z {
 	switch len(x) {
 	case 2:
 		return m.dft2(x)
+	case 3:
+		return m.dft3(x)
 	case 4:
 		return m.dft4(x)
+	case 5:
+		return m.dft5(x)
 	}
 	return m.dft8(x, half)
 }

@@ -46,7 +46,7 @@ func (m machine) combine() {
 		}
 		coefficient := m.spread(row.at(q, 0))
 		for h := range b {
-			plus(sums[q][h], coefficient, b[h])
+			m.plus(sums[q][h], coefficient, b[h])
 		}
 	}
 	ADDQ(U8(8), f)
@@ -55,7 +55,7 @@ func (m machine) combine() {
 	JNZ(LabelRef(name + "next"))
 	for q := range sums {
 		for h, offset := range m.halves() {
-			VMOVUPD(sums[q][h], Mem{Base: dst, Disp: line*q + offset})
+			m.store(sums[q][h], Mem{Base: dst, Disp: line*q + offset})
 		}
 	}
 	// f has gone through one row; the group's others are behind it.

@@ -1,16 +1,28 @@
 package main
 
 import (
+	"fmt"
+	"strings"
+
 	. "github.com/mmcloughlin/avo/build"
 	. "github.com/mmcloughlin/avo/operand"
 	"github.com/mmcloughlin/avo/reg"
 )
 
-// machine is a vector unit: registers of 8 lanes (AVX-512) or of 4, two of
-// which make a point (AVX2).
+// machine is a vector unit and the precision of its numbers. A point of all
+// lanes is one register of AVX-512, two of AVX2.
 type machine struct {
-	wide bool
-	name string
+	wide   bool
+	single bool
+	name   string
+}
+
+// machines lists all that kernels are written for.
+var machines = []machine{
+	{wide: true, name: "AVX512"},
+	{name: "AVX2"},
+	{wide: true, single: true, name: "SingleAVX512"},
+	{single: true, name: "SingleAVX2"},
 }
 
 // line is the size in bytes of a point of all lanes in one array.
@@ -24,6 +36,41 @@ func (m machine) halves() []int {
 	return []int{0, 32}
 }
 
+// size is the size of a number in bytes.
+func (m machine) size() int {
+	if m.single {
+		return 4
+	}
+	return 8
+}
+
+// signature replaces NUMBER by the Go type of a number.
+func (m machine) signature(s string) string {
+	return strings.ReplaceAll(s, "NUMBER", fmt.Sprintf("float%d", 8*m.size()))
+}
+
+// constant returns a number for a data section.
+func (m machine) constant(v float64) Constant {
+	if m.single {
+		return F32(v)
+	}
+	return F64(v)
+}
+
+var numbers = map[string]Mem{}
+
+// number returns the address of a constant.
+func (m machine) number(v float64) Mem {
+	c := m.constant(v)
+	key := fmt.Sprintf("%T %v", c, v)
+	at, ok := numbers[key]
+	if !ok {
+		at = ConstData(fmt.Sprintf("number%d", len(numbers)), c)
+		numbers[key] = at
+	}
+	return at
+}
+
 type vec = reg.VecVirtual
 
 func (m machine) reg() vec {
@@ -33,34 +80,52 @@ func (m machine) reg() vec {
 	return YMM()
 }
 
+// do issues the instruction of this machine's precision.
+func (m machine) do(double, single func(...Op), operands ...Op) {
+	if m.single {
+		single(operands...)
+		return
+	}
+	double(operands...)
+}
+
 func (m machine) load(at Mem) vec {
 	v := m.reg()
-	VMOVUPD(at, v)
+	m.do(VMOVUPD, VMOVUPS, at, v)
 	return v
 }
+
+func (m machine) store(v vec, at Mem) { m.do(VMOVUPD, VMOVUPS, v, at) }
 
 // spread loads one number into all lanes.
 func (m machine) spread(at Mem) vec {
 	v := m.reg()
-	VBROADCASTSD(at, v)
+	m.do(VBROADCASTSD, VBROADCASTSS, at, v)
 	return v
 }
 
-func (m machine) add(a, b vec) vec { v := m.reg(); VADDPD(b, a, v); return v }
-func (m machine) sub(a, b vec) vec { v := m.reg(); VSUBPD(b, a, v); return v }
-func (m machine) mul(a, b vec) vec { v := m.reg(); VMULPD(b, a, v); return v }
+// copy returns a copy of v.
+func (m machine) copy(v vec) vec {
+	c := m.reg()
+	m.do(VMOVAPD, VMOVAPS, v, c)
+	return c
+}
+
+func (m machine) add(a, b vec) vec { v := m.reg(); m.do(VADDPD, VADDPS, b, a, v); return v }
+func (m machine) sub(a, b vec) vec { v := m.reg(); m.do(VSUBPD, VSUBPS, b, a, v); return v }
+func (m machine) mul(a, b vec) vec { v := m.reg(); m.do(VMULPD, VMULPS, b, a, v); return v }
 
 // plus returns c + a·b in c's register, minus c − a·b.
-func plus(c, a, b vec) vec  { VFMADD231PD(b, a, c); return c }
-func minus(c, a, b vec) vec { VFNMADD231PD(b, a, c); return c }
+func (m machine) plus(c, a, b vec) vec  { m.do(VFMADD231PD, VFMADD231PS, b, a, c); return c }
+func (m machine) minus(c, a, b vec) vec { m.do(VFNMADD231PD, VFNMADD231PS, b, a, c); return c }
 
 // horner sets x to x·z + the number at c.
 func (m machine) horner(x, z vec, c Mem) {
 	if m.wide {
-		VFMADD213PD_BCST(c, z, x)
+		m.do(VFMADD213PD_BCST, VFMADD213PS_BCST, c, z, x)
 		return
 	}
-	VFMADD213PD(m.spread(c), z, x)
+	m.do(VFMADD213PD, VFMADD213PS, m.spread(c), z, x)
 }
 
 // z is a complex number in all lanes.
@@ -92,32 +157,41 @@ func (m machine) factor(re, im Mem) factor {
 	return f
 }
 
+// times returns a times the number that f keeps at at or in v.
+func (m machine) times(a vec, at Mem, v vec) vec {
+	if m.wide {
+		product := m.reg()
+		m.do(VMULPD_BCST, VMULPS_BCST, at, a, product)
+		return product
+	}
+	return m.mul(a, v)
+}
+
+// timesPlus adds that product to c, timesMinus subtracts it.
+func (m machine) timesPlus(c, a vec, at Mem, v vec) vec {
+	if m.wide {
+		m.do(VFMADD231PD_BCST, VFMADD231PS_BCST, at, a, c)
+		return c
+	}
+	return m.plus(c, a, v)
+}
+
+func (m machine) timesMinus(c, a vec, at Mem, v vec) vec {
+	if m.wide {
+		m.do(VFNMADD231PD_BCST, VFNMADD231PS_BCST, at, a, c)
+		return c
+	}
+	return m.minus(c, a, v)
+}
+
 // turn returns a·f.
 func (m machine) turn(a z, f factor) z {
-	re, im := m.reg(), m.reg()
-	if m.wide {
-		VMULPD_BCST(f.reAt, a.re, re)
-		VMULPD_BCST(f.imAt, a.re, im)
-		VFNMADD231PD_BCST(f.imAt, a.im, re)
-		VFMADD231PD_BCST(f.reAt, a.im, im)
-		return z{re, im}
-	}
-	VMULPD(f.re, a.re, re)
-	VMULPD(f.im, a.re, im)
-	return z{minus(re, a.im, f.im), plus(im, a.im, f.re)}
+	re, im := m.times(a.re, f.reAt, f.re), m.times(a.re, f.imAt, f.im)
+	return z{m.timesMinus(re, a.im, f.imAt, f.im), m.timesPlus(im, a.im, f.reAt, f.re)}
 }
 
 // unturn returns a times the conjugate of f.
 func (m machine) unturn(a z, f factor) z {
-	re, im := m.reg(), m.reg()
-	if m.wide {
-		VMULPD_BCST(f.reAt, a.re, re)
-		VMULPD_BCST(f.reAt, a.im, im)
-		VFMADD231PD_BCST(f.imAt, a.im, re)
-		VFNMADD231PD_BCST(f.imAt, a.re, im)
-		return z{re, im}
-	}
-	VMULPD(f.re, a.re, re)
-	VMULPD(f.re, a.im, im)
-	return z{plus(re, a.im, f.im), minus(im, a.re, f.im)}
+	re, im := m.times(a.re, f.reAt, f.re), m.times(a.im, f.reAt, f.re)
+	return z{m.timesPlus(re, a.im, f.imAt, f.im), m.timesMinus(im, a.re, f.imAt, f.im)}
 }

@@ -9,13 +9,16 @@ import (
 
 func main() {
 	ConstraintExpr("amd64,!purego")
-	for _, m := range []machine{{wide: true, name: "AVX512"}, {name: "AVX2"}} {
+	for _, m := range machines {
 		m.passes()
 		m.middles()
 		m.phases()
 		m.damp()
-		m.combine()
-		m.tile()
+		if !m.single {
+			m.mix()
+			m.combine()
+			m.tile()
+		}
 	}
 	Generate()
 }

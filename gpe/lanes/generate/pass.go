@@ -3,41 +3,34 @@ package main
 import (
 	"fmt"
 	"math"
+	"slices"
 
 	. "github.com/mmcloughlin/avo/build"
 	. "github.com/mmcloughlin/avo/operand"
 	"github.com/mmcloughlin/avo/reg"
 )
 
-func move(from, to vec) { VMOVAPD(from, to) }
-
 // radices for which passes are made. Eight numbers and what is in between do
 // not fit the 16 registers of AVX2.
 func (m machine) radices() []int {
 	if m.wide {
-		return []int{2, 4, 8}
+		return []int{2, 3, 4, 5, 8}
 	}
-	return []int{2, 4}
+	return []int{2, 3, 4, 5}
 }
-
-var halfConstant Mem
 
 // sqrtHalf returns a register with √½ where a radix needs it.
 func (m machine) sqrtHalf(radix int) vec {
 	if radix != 8 {
 		return nil
 	}
-	if halfConstant.Base == nil {
-		halfConstant = ConstData("sqrtHalf", F64(math.Sqrt2/2))
-	}
-	return m.spread(halfConstant)
+	return m.spread(m.number(math.Sqrt2 / 2))
 }
 
 // legs is the addresses of the legs of a butterfly in one array.
 type legs struct {
 	base, far      reg.GPVirtual // legs 0 and 4
 	stride, thrice reg.GPVirtual
-	distant        bool
 }
 
 // at returns the address of leg q.
@@ -72,7 +65,7 @@ func (m machine) pass(radix int, forward bool) {
 	if forward {
 		name = "forward"
 	}
-	TEXT(fmt.Sprintf("%s%d%s", name, radix, m.name), NOSPLIT, "func(re, im, twiddle *float64, blocks, span int)")
+	TEXT(fmt.Sprintf("%s%d%s", name, radix, m.name), NOSPLIT, m.signature("func(re, im, twiddle *NUMBER, blocks, span int)"))
 	Pragma("noescape")
 	re, im, twiddle := Load(Param("re"), GP64()), Load(Param("im"), GP64()), Load(Param("twiddle"), GP64())
 	blocks, span := Load(Param("blocks"), GP64()), Load(Param("span"), GP64())
@@ -89,7 +82,7 @@ func (m machine) pass(radix int, forward bool) {
 	MOVQ(twiddle, at)
 	MOVQ(span, j)
 	Label(label + "next")
-	if radix == 8 {
+	if radix > 4 {
 		LEAQ(Mem{Base: re}.Idx(stride, 4), reFar)
 		LEAQ(Mem{Base: im}.Idx(stride, 4), imFar)
 	}
@@ -105,8 +98,8 @@ func (m machine) pass(radix int, forward bool) {
 				if q > 0 {
 					y = m.turn(y, m.twiddle(at, q))
 				}
-				VMOVUPD(y.re, r.at(q, offset))
-				VMOVUPD(y.im, i.at(q, offset))
+				m.store(y.re, r.at(q, offset))
+				m.store(y.im, i.at(q, offset))
 			}
 			continue
 		}
@@ -117,13 +110,13 @@ func (m machine) pass(radix int, forward bool) {
 			}
 		}
 		for q, y := range m.backward(x, half) {
-			VMOVUPD(y.re, r.at(q, offset))
-			VMOVUPD(y.im, i.at(q, offset))
+			m.store(y.re, r.at(q, offset))
+			m.store(y.im, i.at(q, offset))
 		}
 	}
 	ADDQ(U8(line), re)
 	ADDQ(U8(line), im)
-	ADDQ(U32(16*(radix-1)), at)
+	ADDQ(U32(2*m.size()*(radix-1)), at)
 	DECQ(j)
 	JNZ(LabelRef(label + "next"))
 	// On to the next block: past the other legs.
@@ -137,7 +130,7 @@ func (m machine) pass(radix int, forward bool) {
 }
 
 func (m machine) twiddle(at reg.GPVirtual, q int) factor {
-	return m.factor(Mem{Base: at, Disp: 16 * (q - 1)}, Mem{Base: at, Disp: 16*(q-1) + 8})
+	return m.factor(Mem{Base: at, Disp: 2 * m.size() * (q - 1)}, Mem{Base: at, Disp: m.size() * (2*q - 1)})
 }
 
 func finish(machine) {
@@ -148,12 +141,12 @@ func finish(machine) {
 // middles writes the sweep of the last forward pass, the kinetic factor and
 // the first backward pass on neighbouring places.
 func (m machine) middles() {
-	for _, radix := range m.radices() {
-		if radix == 2 {
+	for _, radix := range []int{4, 8} {
+		if !slices.Contains(m.radices(), radix) {
 			continue
 		}
 		name := fmt.Sprintf("middle%d%s", radix, m.name)
-		TEXT(name, NOSPLIT, "func(re, im, kinRe, kinIm *float64, groups int)")
+		TEXT(name, NOSPLIT, m.signature("func(re, im, kinRe, kinIm *NUMBER, groups int)"))
 		re, im := Load(Param("re"), GP64()), Load(Param("im"), GP64())
 		kinRe, kinIm := Load(Param("kinRe"), GP64()), Load(Param("kinIm"), GP64())
 		groups := Load(Param("groups"), GP64())
@@ -167,18 +160,18 @@ func (m machine) middles() {
 			}
 			y := m.dft(x, half)
 			for q := range y {
-				y[q] = m.turn(y[q], m.factor(Mem{Base: kinRe, Disp: 8 * q}, Mem{Base: kinIm, Disp: 8 * q}))
+				y[q] = m.turn(y[q], m.factor(Mem{Base: kinRe, Disp: m.size() * q}, Mem{Base: kinIm, Disp: m.size() * q}))
 			}
 			for q, v := range m.backward(y, half) {
 				d := line*q + offset
-				VMOVUPD(v.re, Mem{Base: re, Disp: d})
-				VMOVUPD(v.im, Mem{Base: im, Disp: d})
+				m.store(v.re, Mem{Base: re, Disp: d})
+				m.store(v.im, Mem{Base: im, Disp: d})
 			}
 		}
 		ADDQ(U32(line*radix), re)
 		ADDQ(U32(line*radix), im)
-		ADDQ(U8(8*radix), kinRe)
-		ADDQ(U8(8*radix), kinIm)
+		ADDQ(U8(m.size()*radix), kinRe)
+		ADDQ(U8(m.size()*radix), kinIm)
 		DECQ(groups)
 		JNZ(LabelRef(name + "next"))
 		finish(m)

@@ -1,35 +1,25 @@
 package main
 
 import (
-	"fmt"
-
 	. "github.com/mmcloughlin/avo/build"
 	. "github.com/mmcloughlin/avo/operand"
 	"github.com/mmcloughlin/avo/reg"
 )
 
 // The polynomials of rotate.go, highest term first.
-var sine = []float64{
-	7.408584124510002e-07, -2.1872378330766814e-05, 0.00046628604345404966, -0.0073704272753377644,
-	0.08214588614216695, -0.5992645292863936, 2.550164039875999, -5.167712780049946, 3.141592653589793,
-}
-
-var cosine = []float64{
-	4.147269028728277e-06, -0.00010456453928528452, 0.0019295555721679475, -0.02580688861695975,
-	0.2353306301195154, -1.3352627688431513, 4.058712126416504, -4.934802200544677, 1,
-}
-
-var numbers = map[float64]Mem{}
-
-// number returns the address of a constant.
-func number(v float64) Mem {
-	at, ok := numbers[v]
-	if !ok {
-		at = ConstData(fmt.Sprintf("number%d", len(numbers)), F64(v))
-		numbers[v] = at
+var (
+	sine = []float64{
+		7.408584124510002e-07, -2.1872378330766814e-05, 0.00046628604345404966, -0.0073704272753377644,
+		0.08214588614216695, -0.5992645292863936, 2.550164039875999, -5.167712780049946, 3.141592653589793,
 	}
-	return at
-}
+	cosine = []float64{
+		4.147269028728277e-06, -0.00010456453928528452, 0.0019295555721679475, -0.02580688861695975,
+		0.2353306301195154, -1.3352627688431513, 4.058712126416504, -4.934802200544677, 1,
+	}
+	// Those of rotate_single.go: there, cos − 1 over the square of the argument.
+	sineSingle   = []float64{0.0764338076115, -0.597625374794, 2.54995775223, -5.16770219803, 3.14159250259}
+	cosineSingle = []float64{-0.0239638742059, 0.234683766961, -1.33516156673, 4.0587053299, -4.93480205536}
+)
 
 type law int
 
@@ -45,9 +35,9 @@ func (m machine) phases() {
 		law       law
 		name, sig string
 	}{
-		{cubic, "phaseCubic", "func(re, im, potential, coupling *float64, points int)"},
-		{shifted, "phaseShifted", "func(re, im, potential, coupling, density *float64, points int)"},
-		{swollen, "phaseSwollen", "func(re, im, potential, coupling, density *float64, swelling, scale float64, points int)"},
+		{cubic, "phaseCubic", "func(re, im, potential, coupling *NUMBER, points int)"},
+		{shifted, "phaseShifted", "func(re, im, potential, coupling, density *NUMBER, points int)"},
+		{swollen, "phaseSwollen", "func(re, im, potential, coupling, density *NUMBER, swelling, scale NUMBER, points int)"},
 	} {
 		m.phase(l.name+m.name, l.sig, l.law)
 	}
@@ -56,7 +46,7 @@ func (m machine) phases() {
 // phase is a sweep in which each point's phase t = v + g f is reduced by its
 // nearest whole number n, and the field turned by (−1)^n exp(−iπ(t−n)).
 func (m machine) phase(name, sig string, l law) {
-	TEXT(name, NOSPLIT, sig)
+	TEXT(name, NOSPLIT, m.signature(sig))
 	Pragma("noescape")
 	re, im := Load(Param("re"), GP64()), Load(Param("im"), GP64())
 	v, g := Load(Param("potential"), GP64()), Load(Param("coupling"), GP64())
@@ -69,12 +59,20 @@ func (m machine) phase(name, sig string, l law) {
 		swelling, scale = m.argument("swelling"), m.argument("scale")
 	}
 	points := Load(Param("points"), GP64())
-	magic := m.spread(number(3 << 51))
+	// What added leaves the whole part in the lowest bits of the mantissa.
+	magic := m.spread(m.number(3 << 51))
+	if m.single {
+		magic = m.spread(m.number(3 << 22))
+	}
+	sines, cosines := sine, cosine
+	if m.single {
+		sines, cosines = sineSingle, cosineSingle
+	}
 	Label(name + "next")
 	for _, offset := range m.halves() {
 		x := z{m.load(Mem{Base: re, Disp: offset}), m.load(Mem{Base: im, Disp: offset})}
 		rho := m.mul(x.re, x.re)
-		plus(rho, x.im, x.im)
+		m.plus(rho, x.im, x.im)
 		f := rho
 		coupling := m.spread(Mem{Base: g})
 		if l != cubic {
@@ -82,48 +80,62 @@ func (m machine) phase(name, sig string, l law) {
 		}
 		if l == swollen {
 			// scale·y(4+9y)/(r(1+3y+r)), r = √(1+2y), y = ηn.
-			one := m.spread(number(1))
+			one := m.spread(m.number(1))
 			y := m.mul(swelling, f)
 			root := m.add(y, y)
 			root = m.add(root, one)
-			VSQRTPD(root, root)
-			over := m.spread(number(4))
-			plus(over, y, m.spread(number(9)))
+			m.do(VSQRTPD, VSQRTPS, root, root)
+			over := m.spread(m.number(4))
+			m.plus(over, y, m.spread(m.number(9)))
 			over = m.mul(over, y)
 			under := m.add(one, root)
-			plus(under, y, m.spread(number(3)))
+			m.plus(under, y, m.spread(m.number(3)))
 			under = m.mul(under, root)
-			VDIVPD(under, over, over)
+			m.do(VDIVPD, VDIVPS, under, over, over)
 			f = m.mul(over, scale)
 		}
 		t := m.spread(Mem{Base: v})
-		plus(t, coupling, f)
+		m.plus(t, coupling, f)
 		n := m.add(t, magic)
 		part := m.sub(t, m.sub(n, magic))
 		sign := m.reg()
-		VPSLLQ(U8(63), n, sign)
+		m.do(VPSLLQ, VPSLLD, U8(8*m.size()-1), n, sign)
 		square := m.mul(part, part)
-		sin, cos := m.spread(number(sine[0])), m.spread(number(cosine[0]))
-		for i := 1; i < len(sine); i++ {
-			m.horner(sin, square, number(sine[i]))
-			m.horner(cos, square, number(cosine[i]))
+		sin, cos := m.spread(m.number(sines[0])), m.spread(m.number(cosines[0]))
+		for i := 1; i < max(len(sines), len(cosines)); i++ {
+			if i < len(sines) {
+				m.horner(sin, square, m.number(sines[i]))
+			}
+			if i < len(cosines) {
+				m.horner(cos, square, m.number(cosines[i]))
+			}
 		}
 		sin = m.mul(sin, part)
-		m.flip(sin, sign)
-		m.flip(cos, sign)
 		// (re + i im)(cos − i sin)
-		newRe, newIm := m.mul(x.re, cos), m.mul(x.im, cos)
-		plus(newRe, x.im, sin)
-		minus(newIm, x.re, sin)
-		VMOVUPD(newRe, Mem{Base: re, Disp: offset})
-		VMOVUPD(newIm, Mem{Base: im, Disp: offset})
+		var newRe, newIm vec
+		if m.single {
+			// With cos − 1 a small phase turns to the full precision of x.
+			less := m.mul(cos, square)
+			newRe = m.plus(m.plus(m.copy(x.re), x.im, sin), x.re, less)
+			newIm = m.plus(m.minus(m.copy(x.im), x.re, sin), x.im, less)
+			m.flip(newRe, sign)
+			m.flip(newIm, sign)
+		} else {
+			m.flip(sin, sign)
+			m.flip(cos, sign)
+			newRe, newIm = m.mul(x.re, cos), m.mul(x.im, cos)
+			m.plus(newRe, x.im, sin)
+			m.minus(newIm, x.re, sin)
+		}
+		m.store(newRe, Mem{Base: re, Disp: offset})
+		m.store(newIm, Mem{Base: im, Disp: offset})
 	}
 	ADDQ(U8(line), re)
 	ADDQ(U8(line), im)
-	ADDQ(U8(8), v)
-	ADDQ(U8(8), g)
+	ADDQ(U8(m.size()), v)
+	ADDQ(U8(m.size()), g)
 	if l != cubic {
-		ADDQ(U8(8), s)
+		ADDQ(U8(m.size()), s)
 	}
 	DECQ(points)
 	JNZ(LabelRef(name + "next"))
@@ -133,13 +145,13 @@ func (m machine) phase(name, sig string, l law) {
 // flip changes the sign of x where the sign bit of s is set.
 func (m machine) flip(x, s vec) {
 	if m.wide {
-		VPXORQ(s, x, x)
+		m.do(VPXORQ, VPXORD, s, x, x)
 		return
 	}
-	VXORPD(s, x, x)
+	m.do(VXORPD, VXORPS, s, x, x)
 }
 
-// argument returns a float64 parameter in all lanes.
+// argument returns a parameter in all lanes.
 func (m machine) argument(name string) vec {
 	p, err := Param(name).Resolve()
 	if err != nil {
@@ -151,7 +163,7 @@ func (m machine) argument(name string) vec {
 // damp writes the multiplication of each point by a real number.
 func (m machine) damp() {
 	name := "damp" + m.name
-	TEXT(name, NOSPLIT, "func(re, im, d *float64, points int)")
+	TEXT(name, NOSPLIT, m.signature("func(re, im, d *NUMBER, points int)"))
 	Pragma("noescape")
 	re, im, d := Load(Param("re"), GP64()), Load(Param("im"), GP64()), Load(Param("d"), GP64())
 	points := Load(Param("points"), GP64())
@@ -160,12 +172,12 @@ func (m machine) damp() {
 	for _, offset := range m.halves() {
 		for _, base := range []reg.Register{re, im} {
 			at := Mem{Base: base, Disp: offset}
-			VMOVUPD(m.mul(by, m.load(at)), at)
+			m.store(m.mul(by, m.load(at)), at)
 		}
 	}
 	ADDQ(U8(line), re)
 	ADDQ(U8(line), im)
-	ADDQ(U8(8), d)
+	ADDQ(U8(m.size()), d)
 	DECQ(points)
 	JNZ(LabelRef(name + "next"))
 	finish(m)

@@ -58,7 +58,7 @@ func (m machine) tileRows(label string, dst, a, b, rows, next reg.Register, firs
 	for i := range sums {
 		left := m.spread(Mem{Base: a, Disp: 8 * (first + i)})
 		for k, r := range right {
-			plus(sums[i][k], left, r)
+			m.plus(sums[i][k], left, r)
 		}
 	}
 	ADDQ(U8(64), a)
@@ -68,7 +68,7 @@ func (m machine) tileRows(label string, dst, a, b, rows, next reg.Register, firs
 	for i := range sums {
 		for k, v := range sums[i] {
 			p, part := k/len(parts), k%len(parts)
-			VMOVUPD(v, Mem{Base: dst, Disp: 512*p + 64*(first+i) + parts[part]})
+			m.store(v, Mem{Base: dst, Disp: 512*p + 64*(first+i) + parts[part]})
 		}
 	}
 }
