@@ -20,7 +20,7 @@ type Chart struct {
 type ChartPanel struct {
 	Ordinate string
 	Log      bool
-	Lines    []Curve  // up to five; lines of the same name in other panels look alike
+	Lines    []Curve  // up to six; lines of the same name in other panels look alike
 	Dots     []Points // one set looks like another
 	Tint     []Band
 	Levels   []float64 // dotted horizontal lines
@@ -41,7 +41,8 @@ type Mark struct {
 }
 
 // chartLines tells lines apart, without colour too.
-var chartLines = append([]draw.LineStyle{fitLine}, append(append([]draw.LineStyle{}, theory...), dataLine)...)
+var chartLines = append([]draw.LineStyle{fitLine}, append(append([]draw.LineStyle{}, theory...), dataLine,
+	draw.LineStyle{Color: quiet, Width: 1.3 * pt, Dashes: []vg.Length{10 * pt, 3 * pt}})...)
 
 // Page lays the figure out, the keys on top.
 func (f Chart) Page() *Page {

@@ -30,6 +30,7 @@ func ring(t testing.TB, width, end, atoms float64, points int, length float64) I
 	land := gpe.NewSwitch(g, gpe.Switch{Velocity: 0.75, SoundUp: 1, SoundDown: 0.5, Width: width, Ramp: 3})
 	p := &gpe.Problem{Grid: g, Law: fluid.Cubic(), Landscape: land, Ground: gpe.UniformGround(g, fluid.Cubic()),
 		AtomsPerLength: atoms, Scheme: gpe.Strang(), TimeStep: 0.05, Times: []float64{end}, Seed: 1}
+	p.TimeStep = math.Min(p.TimeStep, 0.9*p.LongestStep())
 	noise, err := gpe.NewPlaneWaves(p.Ground, 1, 0, atoms, 0)
 	if err != nil {
 		t.Fatal(err)
