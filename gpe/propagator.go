@@ -82,8 +82,7 @@ func (p *Propagator) newLeg(from, to float64, steps int) leg {
 	return l
 }
 
-// kinetic makes the table of exp(−i dt (k²/2 + vk)). At the Nyquist wave,
-// which stands for both signs of k, the drift term is left out.
+// kinetic makes the table of exp(−i dt (k²/2 + vk)).
 func (p *Propagator) kinetic(dt float64) *lanes.Kinetic {
 	angle := make([]float64, p.Grid.N)
 	for q := range angle {
@@ -92,12 +91,9 @@ func (p *Propagator) kinetic(dt float64) *lanes.Kinetic {
 	return p.plan.Kinetic(angle)
 }
 
+// kineticEnergy returns the energy of Fourier index q in the landscape's frame.
 func (p *Propagator) kineticEnergy(q int) float64 {
-	k := p.k[q]
-	if 2*q == p.Grid.N {
-		return k * k / 2
-	}
-	return k*k/2 + p.Landscape.Drift()*k
+	return kineticEnergy(p.Grid, q, p.Landscape.Drift())
 }
 
 // Steps returns the number of time steps to the last recorded time.

@@ -1,0 +1,181 @@
+package probe
+
+import (
+	"math"
+
+	"tailrace/gpe"
+	"tailrace/gpe/bogoliubov"
+	"tailrace/gpe/flow"
+)
+
+// layout says where and when: all packets are at the horizon at the same time,
+// and each outgoing wave is read when it is clear of the horizon and of the
+// others on its side.
+type layout struct {
+	up, down flow.State
+	horizon  float64
+	left     float64 // outside left and right, relative to the horizon, the flow is uniform
+	right    float64
+	top      float64 // end of the packets' band
+	shape    float64 // Concentration
+	duration float64 // from their middle in time to their ends
+
+	arrival float64    // when the packets are at the horizon
+	read    [3]float64 // when the outgoing waves are read
+	near    [3]float64 // and where: between these distances from the horizon,
+	far     [3]float64 // both positive
+	start   [3][2]float64
+	grid    gpe.Grid
+	seam    float64
+}
+
+// flat is how far a flow may be from its ends, relatively, where waves are told
+// apart.
+const flat = 1e-6
+
+// crowd is how many frequencies stand for the band when room is made for it.
+const crowd = 64
+
+// newLayout makes room for the scattering.
+func newLayout(p flow.Profile, o Options) *layout {
+	l := &layout{shape: o.Concentration}
+	var h flow.Horizon
+	l.up, l.down, h = p.Ends()
+	l.horizon = h.Position
+	l.left, l.right = uniformBeyond(p)
+	l.top = o.Top * bogoliubov.MaxFrequency(l.down.Velocity, l.down.SoundSpeed)
+	l.duration = 2 * math.Hypot(l.shape, math.Pi) / l.top
+
+	// Fastest and slowest of every channel over the part of the band that
+	// carries more than a thousandth of the peak.
+	var in, out [3]extent
+	shortest := 0.0
+	for i := 1; i < crowd; i++ {
+		omega := l.top * float64(i) / crowd
+		if l.spectrum(omega) < 1e-3 {
+			continue
+		}
+		a, b := bogoliubov.Channels(omega, l.up, l.down)
+		for c := range 3 {
+			in[c].add(math.Abs(a[c].Speed))
+			out[c].add(math.Abs(b[c].Speed))
+			shortest = math.Max(shortest, math.Max(math.Abs(a[c].K), math.Abs(b[c].K)))
+		}
+	}
+	margin := [3]float64{-l.left, l.right, l.right}
+	for c := range 3 {
+		l.arrival = math.Max(l.arrival, l.duration+margin[c]/in[c].least)
+	}
+	var reach [2]float64 // upstream and downstream
+	side := func(c int) *float64 { return &reach[min(c, 1)] }
+	for c := range 3 {
+		l.start[c] = [2]float64{in[c].least * (l.arrival - l.duration), in[c].most * (l.arrival + l.duration)}
+		*side(c) = math.Max(*side(c), l.start[c][1])
+		// Twice the way, as waves are slower within.
+		l.read[c] = l.arrival + l.duration + 2*margin[c]/out[c].least
+	}
+	// The fast wave downstream has left the slow one behind.
+	fast, slow := out[bogoliubov.D1].least, out[bogoliubov.D2].most
+	l.read[bogoliubov.D1] = math.Max(l.read[bogoliubov.D1], l.arrival+l.duration*(fast+slow)/(fast-slow))
+	last := 0.0
+	for c := range 3 {
+		since := l.read[c] - l.arrival
+		l.near[c] = math.Max(margin[c], out[c].least*(since-l.duration))
+		l.far[c] = out[c].most * (since + l.duration)
+		*side(c) = math.Max(*side(c), l.far[c])
+		last = math.Max(last, since)
+	}
+	// The fast wave must not come round to the horizon before the end.
+	l.seam = seamWidth
+	room := 2 * l.taper() // for the windows' edges
+	seam := 2 * gpe.SeamReach * l.seam
+	reach[0] += room
+	reach[1] += room
+	if round := out[bogoliubov.D1].most * (last + l.duration); round > reach[0]+reach[1]+seam {
+		reach[1] = round - reach[0] - seam
+	}
+	length := reach[0] + reach[1] + seam
+	k := o.Resolution * (2.5*shortest + math.Abs(l.down.Velocity-l.up.Velocity))
+	l.grid = gpe.NewGrid(points(length*k/math.Pi), length, l.horizon-reach[0])
+	return l
+}
+
+// seamWidth is that of the way back, in ξ: many of the waves' lengths, as it
+// reaches over seventeen times that.
+const seamWidth = 4
+
+// taper is the width of the windows' edges.
+func (l *layout) taper() float64 { return 8 * math.Max(-l.left, l.right) }
+
+// extent is the range of some speeds.
+type extent struct{ least, most float64 }
+
+func (e *extent) add(v float64) {
+	if e.most == 0 {
+		e.least = v
+	}
+	e.least, e.most = math.Min(e.least, v), math.Max(e.most, v)
+}
+
+// points returns the least number of points that the propagator takes.
+func points(least float64) int {
+	best := 0
+	for _, odd := range []int{1, 3, 5} {
+		n := 16 * odd
+		for float64(n) < least {
+			n *= 2
+		}
+		if best == 0 || n < best {
+			best = n
+		}
+	}
+	return best
+}
+
+// uniformBeyond returns the places, relative to the horizon, outside which the
+// flow is flat.
+func uniformBeyond(p flow.Profile) (left, right float64) {
+	up, down, h := p.Ends()
+	a, b := p.Span()
+	off := func(x float64, s flow.State) bool {
+		n, v := p.At(x)
+		return math.Abs(n/s.Density-1) > flat || math.Abs(v/s.Velocity-1) > flat || math.Abs(p.SoundSpeed(x)/s.SoundSpeed-1) > flat
+	}
+	const steps = 1000
+	left, right = a, b
+	for i := range steps {
+		left = a + (b-a)*float64(i)/steps
+		if off(left, up) {
+			break
+		}
+	}
+	for i := range steps {
+		right = b - (b-a)*float64(i)/steps
+		if off(right, down) {
+			break
+		}
+	}
+	// At least a length to count on, should the profile be a sharp edge.
+	return math.Min(left-h.Position, -1/up.SoundSpeed), math.Max(right-h.Position, 1/down.SoundSpeed)
+}
+
+// spectrum is the packets' amplitude against frequency, 1 at its peak: the
+// window of J. F. Kaiser (from memory: R. W. Hamming, Digital Filters, 1977),
+// which of all with a band is nearly the most confined in time.
+func (l *layout) spectrum(omega float64) float64 {
+	y := 2*omega/l.top - 1
+	if y <= -1 || y >= 1 {
+		return 0
+	}
+	return besselI0(l.shape*math.Sqrt((1-y)*(1+y))) / besselI0(l.shape)
+}
+
+// besselI0 is the modified Bessel function I₀ by its series.
+func besselI0(x float64) float64 {
+	sum, term := 1.0, 1.0
+	for k := 1.0; term > 1e-17*sum; k++ {
+		term *= x * x / (4 * k * k)
+		sum += term
+	}
+	return sum
+}

@@ -1,0 +1,54 @@
+package probe
+
+import (
+	"tailrace/gpe"
+	"tailrace/gpe/fluid"
+)
+
+// Options say how a flow is probed. The zero value takes the defaults.
+type Options struct {
+	// Omega are the frequencies at which the answer is read, rising, between
+	// none and all of the packet's band; nil for 40 across the middle of it.
+	Omega []float64
+	// Top is where the packet's band ends, as a share of ω_max; 0 is 0.95.
+	// The closer to 1, the longer the slowest waves take to get away.
+	Top float64
+	// Concentration is how well the packet is confined in time: outside its
+	// duration it is about exp(−Concentration) of its peak, as is its spectrum
+	// at the ends of its band; 0 is 10. The more, the narrower the middle of
+	// the band.
+	Concentration float64
+	// Amplitude is the packet's largest |δψ/ψ₀|; 0 is 10⁻⁴.
+	Amplitude float64
+	// Resolution divides the grid's spacing; 0 is 1.
+	Resolution float64
+	// TimeStep is the time step as a share of the grid's longest, and Scheme
+	// the splitting; 0 and none are 0.9 and the quartic one.
+	TimeStep float64
+	Scheme   gpe.Scheme
+	// Law is the fluid's; small waves do not depend on it, as the coupling is
+	// adjusted to the flow's own speed of sound.
+	Law fluid.Law
+	// Progress, unless nil, is called now and then with the share done.
+	Progress func(done float64)
+}
+
+func (o Options) filled() Options {
+	set := func(v *float64, value float64) {
+		if *v == 0 {
+			*v = value
+		}
+	}
+	set(&o.Top, 0.95)
+	set(&o.Concentration, 10)
+	set(&o.Amplitude, 1e-4)
+	set(&o.Resolution, 1)
+	set(&o.TimeStep, 0.9)
+	if o.Scheme.Name == "" {
+		o.Scheme = gpe.Quartic()
+	}
+	if !(o.Top > 0 && o.Top < 1 && o.Concentration > 0 && o.Amplitude > 0 && o.Resolution > 0 && o.TimeStep > 0 && o.TimeStep <= 1) {
+		panic("probe: an option is out of range")
+	}
+	return o
+}
