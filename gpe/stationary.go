@@ -44,6 +44,9 @@ type Stationary struct {
 	// Residual is the largest |Im(Hψ₀/ψ₀)|, the rate at which ψ₀ departs from
 	// itself because the grid does not resolve it; the real part vanishes.
 	Residual float64
+	// Rounding is how far density and coupling are from the profile's on the
+	// grid, relative to themselves, because its shortest waves are left out.
+	Rounding float64
 
 	v, g  []float64
 	drift float64
@@ -93,18 +96,25 @@ func (s *Stationary) sample() (amplitude, coupling []float64) {
 		amplitude[j] = math.Sqrt(n + (up.Density-n)*back)
 		coupling[j] = g + (gUp-g)*back
 	}
-	return s.resolve(amplitude), s.resolve(coupling)
+	exactA, exactG := amplitude, coupling
+	amplitude, coupling = s.resolve(amplitude), s.resolve(coupling)
+	for j, a := range amplitude {
+		a /= exactA[refinement*j]
+		s.Rounding = math.Max(s.Rounding, math.Max(math.Abs(a*a-1), math.Abs(coupling[j]/exactG[refinement*j]-1)))
+	}
+	return amplitude, coupling
 }
 
 // resolve brings a function from the finer grid to the grid, with its waves
-// damped by exp(−36 (k/0.7k_max)⁸): to rounding at 0.7k_max, beyond which
-// products of two would come back as longer ones, by 6 % at a third of k_max.
+// damped by exp(−36 (k/0.7k_max)¹⁶): to rounding at 0.7k_max, beyond which
+// products of two would come back as longer ones, and not at all below half of
+// that.
 func (s *Stationary) resolve(fine []float64) []float64 {
 	n := s.Grid.N
 	edge := 0.7 * float64(n) / 2
 	c := fourier.NewFFT(len(fine)).Coefficients(nil, fine)[:n/2+1]
 	for q := range c {
-		c[q] *= complex(math.Exp(-36*math.Pow(float64(q)/edge, 8))/float64(len(fine)), 0)
+		c[q] *= complex(math.Exp(-36*math.Pow(float64(q)/edge, 16))/float64(len(fine)), 0)
 	}
 	return fourier.NewFFT(n).Sequence(nil, c)
 }

@@ -16,6 +16,10 @@ import (
 // exp(−i(vk + ε(k))t). Where vk + ε is negative, b*_k is the amplitude of a wave
 // of negative norm and positive frequency.
 
+// fresh is after how many points e^{ikx} is computed anew instead of from the
+// point before.
+const fresh = 64
+
 // side returns the uniform flow in which channel c lives.
 func (l *layout) side(c int) flow.State {
 	if c == bogoliubov.U {
@@ -31,8 +35,6 @@ func (l *layout) amplitude(chi []complex128, window []float64, c int, w bogoliub
 	s := l.side(c)
 	k := w.K * float64(w.Norm)
 	var plus, minus complex128 // χ at k, and the conjugate of χ at −k
-	// e^{−ikx} by recurrence, refreshed now and then.
-	const fresh = 64
 	turn := cmplx.Rect(1, -k*l.grid.Dx)
 	var e complex128
 	for j, z := range chi {
@@ -54,10 +56,27 @@ func (l *layout) amplitude(chi []complex128, window []float64, c int, w bogoliub
 	return b * cmplx.Rect(1, omega*t)
 }
 
-// window returns a smooth window that is 1 between the distances near and far
-// from the horizon on the side of channel c, and vanishes beyond the given
-// widths of its edges.
-func (l *layout) window(c int, near, far, inner, outer float64) []float64 {
+// before returns the window over the ingoing packet of channel c at time 0.
+func (l *layout) before(c int) []float64 {
+	return l.window(c, l.start[c], l.start[c].least/2)
+}
+
+// after returns the window over the outgoing waves of channel c when they are
+// read. Its inner edge is clear of the horizon, where the flow is not uniform.
+func (l *layout) after(c int) []float64 {
+	clear := l.right
+	if c == bogoliubov.U {
+		clear = -l.left
+	}
+	return l.window(c, l.end[c], l.end[c].least-clear)
+}
+
+// window returns a smooth window that is 1 at the given distances from the
+// horizon on the side of channel c. Its edges are as wide as the gap, or as
+// inner where there is less room towards the horizon.
+func (l *layout) window(c int, over extent, inner float64) []float64 {
+	outer := l.gap()
+	inner = math.Min(inner, outer)
 	h := make([]float64, l.grid.N)
 	sign := 1.0
 	if c == bogoliubov.U {
@@ -65,7 +84,7 @@ func (l *layout) window(c int, near, far, inner, outer float64) []float64 {
 	}
 	for j := range h {
 		d := sign * (l.grid.X(j) - l.horizon)
-		h[j] = edge((d-near)/inner+1) * edge((far-d)/outer+1)
+		h[j] = edge((d-over.least)/inner+1) * edge((over.most-d)/outer+1)
 	}
 	return h
 }
@@ -87,24 +106,21 @@ func (l *layout) packet(c int) []complex128 {
 	n := l.grid.N
 	s := l.side(c)
 	chi := make([]complex128, n)
-	sum := l.branch(c)
-	// χ_k = u b_k + v b*_{−k}; a packet's waves all have one sign of k.
-	for _, m := range sum {
+	for _, m := range l.branch(c) {
 		u, v := bogoliubov.Amplitudes(m.k, s.SoundSpeed)
 		turn := cmplx.Rect(1, m.k*l.grid.Dx)
 		e := m.b
 		for j := range chi {
-			if j%64 == 0 {
+			if j%fresh == 0 {
 				e = m.b * cmplx.Rect(1, m.k*(l.grid.X(j)-l.horizon))
 			}
 			chi[j] += complex(u, 0)*e + complex(v, 0)*cmplx.Conj(e)
 			e *= turn
 		}
 	}
-	// On its own side only, and with room for its ends.
-	window := l.window(c, l.start[c][0], l.start[c][1], l.start[c][0]/2, l.taper())
+	// On its own side only.
 	peak := 0.0
-	for j, h := range window {
+	for j, h := range l.before(c) {
 		chi[j] *= complex(h, 0)
 		peak = math.Max(peak, cmplx.Abs(chi[j]))
 	}

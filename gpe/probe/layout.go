@@ -6,6 +6,7 @@ import (
 	"tailrace/gpe"
 	"tailrace/gpe/bogoliubov"
 	"tailrace/gpe/flow"
+	"tailrace/gpe/fluid"
 )
 
 // layout says where and when: all packets are at the horizon at the same time,
@@ -20,13 +21,15 @@ type layout struct {
 	shape    float64 // Concentration
 	duration float64 // from their middle in time to their ends
 
-	arrival float64    // when the packets are at the horizon
-	read    [3]float64 // when the outgoing waves are read
-	near    [3]float64 // and where: between these distances from the horizon,
-	far     [3]float64 // both positive
-	start   [3][2]float64
-	grid    gpe.Grid
-	seam    float64
+	arrival float64 // when the packets are at the horizon
+	// Where they are at first, and where and when the outgoing waves are read:
+	// distances from the horizon, all positive.
+	start, end [3]extent
+	read       [3]float64
+
+	length, reach float64 // of the ring, and upstream of the horizon
+	points        int
+	grid          gpe.Grid
 }
 
 // flat is how far a flow may be from its ends, relatively, where waves are told
@@ -69,45 +72,65 @@ func newLayout(p flow.Profile, o Options) *layout {
 	var reach [2]float64 // upstream and downstream
 	side := func(c int) *float64 { return &reach[min(c, 1)] }
 	for c := range 3 {
-		l.start[c] = [2]float64{in[c].least * (l.arrival - l.duration), in[c].most * (l.arrival + l.duration)}
-		*side(c) = math.Max(*side(c), l.start[c][1])
+		l.start[c] = extent{in[c].least * (l.arrival - l.duration), in[c].most * (l.arrival + l.duration)}
+		*side(c) = math.Max(*side(c), l.start[c].most)
 		// Twice the way, as waves are slower within.
 		l.read[c] = l.arrival + l.duration + 2*margin[c]/out[c].least
 	}
-	// The fast wave downstream has left the slow one behind.
+	// The fast wave downstream has left the slow one behind when they are read.
 	fast, slow := out[bogoliubov.D1].least, out[bogoliubov.D2].most
-	l.read[bogoliubov.D1] = math.Max(l.read[bogoliubov.D1], l.arrival+l.duration*(fast+slow)/(fast-slow))
+	apart := l.arrival + (l.duration*(fast+slow)+l.gap())/(fast-slow)
+	l.read[bogoliubov.D1] = math.Max(l.read[bogoliubov.D1], apart)
+	l.read[bogoliubov.D2] = math.Max(l.read[bogoliubov.D2], apart)
 	last := 0.0
 	for c := range 3 {
 		since := l.read[c] - l.arrival
-		l.near[c] = math.Max(margin[c], out[c].least*(since-l.duration))
-		l.far[c] = out[c].most * (since + l.duration)
-		*side(c) = math.Max(*side(c), l.far[c])
+		l.end[c] = extent{out[c].least * (since - l.duration), out[c].most * (since + l.duration)}
+		*side(c) = math.Max(*side(c), l.end[c].most)
 		last = math.Max(last, since)
 	}
 	// The fast wave must not come round to the horizon before the end.
-	l.seam = seamWidth
-	room := 2 * l.taper() // for the windows' edges
-	seam := 2 * gpe.SeamReach * l.seam
+	room := 2 * l.gap() // for the windows' edges
+	seam := 2.0 * gpe.SeamReach * seamWidth
 	reach[0] += room
 	reach[1] += room
 	if round := out[bogoliubov.D1].most * (last + l.duration); round > reach[0]+reach[1]+seam {
 		reach[1] = round - reach[0] - seam
 	}
-	length := reach[0] + reach[1] + seam
-	k := o.Resolution * (2.5*shortest + math.Abs(l.down.Velocity-l.up.Velocity))
-	l.grid = gpe.NewGrid(points(length*k/math.Pi), length, l.horizon-reach[0])
+	l.length, l.reach = reach[0]+reach[1]+seam, reach[0]
+	l.points = points(l.length / math.Pi * o.Resolution * (finest*shortest + math.Abs(l.down.Velocity-l.up.Velocity)))
 	return l
 }
 
-// seamWidth is that of the way back, in ξ: many of the waves' lengths, as it
-// reaches over seventeen times that.
+// finest is the grid's k_max over that of the shortest waves, beyond what the
+// phase of the flow takes. With it the grid's error is below 10⁻³ of the
+// amplitudes (see the tests).
+const finest = 3.5
+
+// rounding is how well the grid must resolve the flow: at 6·10⁻³ (a tanh of
+// width 1 at dx = 0.52) amplitudes are right to 10⁻³, at 0.12 (the same of width
+// 0.5 at dx = 0.66) to 5·10⁻².
+const rounding = 0.01
+
+// ground returns the flow on the first grid that resolves it.
+func (l *layout) ground(p flow.Profile, law fluid.Law) (*gpe.Stationary, error) {
+	for {
+		l.grid = gpe.NewGrid(l.points, l.length, l.horizon-l.reach)
+		s, err := gpe.NewStationary(l.grid, law, p, seamWidth)
+		if err != nil || s.Rounding <= rounding {
+			return s, err
+		}
+		l.points = points(1.2 * float64(l.points))
+	}
+}
+
+// seamWidth is that of the way back, in ξ. Nothing that happens there is seen.
 const seamWidth = 4
 
-// taper is the width of the windows' edges.
-func (l *layout) taper() float64 { return 8 * math.Max(-l.left, l.right) }
+// gap is the width of the windows' edges where there is room for it.
+func (l *layout) gap() float64 { return 3 * math.Max(-l.left, l.right) }
 
-// extent is the range of some speeds.
+// extent is a range of speeds or distances.
 type extent struct{ least, most float64 }
 
 func (e *extent) add(v float64) {

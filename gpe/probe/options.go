@@ -15,7 +15,7 @@ type Options struct {
 	Top float64
 	// Concentration is how well the packet is confined in time: outside its
 	// duration it is about exp(−Concentration) of its peak, as is its spectrum
-	// at the ends of its band; 0 is 10. The more, the narrower the middle of
+	// at the ends of its band; 0 is 13. The more, the narrower the middle of
 	// the band.
 	Concentration float64
 	// Amplitude is the packet's largest |δψ/ψ₀|; 0 is 10⁻⁴.
@@ -23,7 +23,7 @@ type Options struct {
 	// Resolution divides the grid's spacing; 0 is 1.
 	Resolution float64
 	// TimeStep is the time step as a share of the grid's longest, and Scheme
-	// the splitting; 0 and none are 0.9 and the quartic one.
+	// the splitting; 0 and none are 0.25 and Strang's.
 	TimeStep float64
 	Scheme   gpe.Scheme
 	// Law is the fluid's; small waves do not depend on it, as the coupling is
@@ -40,12 +40,12 @@ func (o Options) filled() Options {
 		}
 	}
 	set(&o.Top, 0.95)
-	set(&o.Concentration, 10)
+	set(&o.Concentration, 13)
 	set(&o.Amplitude, 1e-4)
 	set(&o.Resolution, 1)
-	set(&o.TimeStep, 0.9)
+	set(&o.TimeStep, 0.25)
 	if o.Scheme.Name == "" {
-		o.Scheme = gpe.Quartic()
+		o.Scheme = gpe.Strang()
 	}
 	if !(o.Top > 0 && o.Top < 1 && o.Concentration > 0 && o.Amplitude > 0 && o.Resolution > 0 && o.TimeStep > 0 && o.TimeStep <= 1) {
 		panic("probe: an option is out of range")

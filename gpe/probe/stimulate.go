@@ -12,6 +12,13 @@ import (
 	"tailrace/gpe/lanes"
 )
 
+// FrequencyError reports a frequency that cannot be read.
+type FrequencyError struct{ Omega, Top float64 }
+
+func (e *FrequencyError) Error() string {
+	return fmt.Sprintf("the frequency %.4g cannot be read from packets of frequencies 0 to %.4g; leave it out, and list the others rising", e.Omega, e.Top)
+}
+
 // Response is what a flow makes of the packets.
 type Response struct {
 	Up, Down flow.State
@@ -22,54 +29,29 @@ type Response struct {
 	// phases included. Comoving and Dying are not filled in.
 	Rows []*bogoliubov.Scattering
 	// Weight is the norm of the ingoing packets at each frequency, as a share
-	// of its peak.
+	// of its peak. What is left of errors goes with its slope.
 	Weight []float64
 
 	Grid     gpe.Grid
 	TimeStep float64
 	Steps    int
 	Duration float64 // in ħ/(m c₀²)
-	// Departure is the largest |δn| of the flow without a packet at the end,
-	// relative to the largest density: how stationary it was.
+	// Departure is the largest |δn| of the flow without a packet at the end, as
+	// a share of the largest density: how stationary it was.
 	Departure float64
+
+	scatterer *bogoliubov.Scatterer
 }
-
-// Alpha2 returns |α|² = |S_ud1|² at each frequency: quanta of positive norm sent
-// upstream for each that came in.
-func (r *Response) Alpha2() []float64 { return r.squares(bogoliubov.U, bogoliubov.D1) }
-
-// Beta2 returns |β|² = |S_d2d1|² at each frequency: quanta of negative norm
-// sent downstream for each that came in.
-func (r *Response) Beta2() []float64 { return r.squares(bogoliubov.D2, bogoliubov.D1) }
-
-func (r *Response) squares(out, in int) []float64 { return squares(r.Rows, out, in) }
-
-func squares(rows []*bogoliubov.Scattering, out, in int) []float64 {
-	x := make([]float64, len(rows))
-	for i, s := range rows {
-		z := s.S[out][in]
-		x[i] = real(z)*real(z) + imag(z)*imag(z)
-	}
-	return x
-}
-
-// lanesOf lists what each lane of the batch carries: packets of a channel with
-// a sign, and the flow alone.
-var lanesOf = [lanes.Width]struct {
-	channel int
-	sign    float64
-}{{bogoliubov.U, 1}, {bogoliubov.U, -1}, {bogoliubov.D1, 1}, {bogoliubov.D1, -1}, {bogoliubov.D2, 1}, {bogoliubov.D2, -1}, {0, 0}, {0, 0}}
-
-// alone is a lane without a packet.
-const alone = lanes.Width - 1
 
 // Stimulate sends packets of all ingoing channels at the horizon of p in the
-// full equation and reads the outgoing waves. Errors are ctx's, those of
-// bogoliubov.NewScatterer for flows without a horizon or uniform ends, and
-// those of gpe.NewStationary and gpe.NewPropagator.
+// full equation and reads the outgoing waves. Errors are ctx's, a
+// *FrequencyError, those of bogoliubov.NewScatterer for flows without a horizon
+// or uniform ends, and those of gpe.NewStationary and gpe.NewPropagator. It
+// panics when an option is out of range.
 func Stimulate(ctx context.Context, p flow.Profile, o Options) (*Response, error) {
 	o = o.filled()
-	if _, err := bogoliubov.NewScatterer(p); err != nil {
+	scatterer, err := bogoliubov.NewScatterer(p)
+	if err != nil {
 		return nil, err
 	}
 	l := newLayout(p, o)
@@ -77,12 +59,16 @@ func Stimulate(ctx context.Context, p flow.Profile, o Options) (*Response, error
 	if omega == nil {
 		omega = l.middle(40)
 	}
+	r := &Response{Up: l.up, Down: l.down, OmegaMax: scatterer.MaxFrequency(), scatterer: scatterer}
+	_, _, r.Horizon = p.Ends()
 	for i, w := range omega {
 		if !(w > 0 && w < l.top) || i > 0 && w <= omega[i-1] {
-			return nil, fmt.Errorf("frequency %g is not between 0 and the packets' highest, %.4g, or not above the one before; leave it out", w, l.top)
+			return nil, &FrequencyError{w, l.top}
 		}
+		r.Rows = append(r.Rows, &bogoliubov.Scattering{Omega: w})
+		r.Weight = append(r.Weight, l.spectrum(w)*l.spectrum(w))
 	}
-	ground, err := gpe.NewStationary(l.grid, o.Law, p, l.seam)
+	ground, err := l.ground(p, o.Law)
 	if err != nil {
 		return nil, err
 	}
@@ -91,27 +77,12 @@ func Stimulate(ctx context.Context, p flow.Profile, o Options) (*Response, error
 	if err != nil {
 		return nil, err
 	}
-	r := &Response{Grid: l.grid, TimeStep: prop.TimeStep, Steps: prop.Steps(), Duration: times[len(times)-1]}
-	r.Up, r.Down, r.Horizon = p.Ends()
-	r.OmegaMax = bogoliubov.MaxFrequency(r.Down.Velocity, r.Down.SoundSpeed)
-	b := l.begin(ground, o.Amplitude)
+	r.Grid, r.TimeStep, r.Steps, r.Duration = l.grid, prop.TimeStep, prop.Steps(), times[len(times)-1]
 
-	in := make([][3]complex128, len(omega))
-	for c := range 3 {
-		window := l.window(c, l.start[c][0], l.start[c][1], l.start[c][0]/2, l.taper())
-		chi := departure(b, c, o.Amplitude)
-		for i, w := range omega {
-			waves, _ := bogoliubov.Channels(w, l.up, l.down)
-			in[i][c] = l.amplitude(chi, window, c, waves[c], w, 0)
-		}
-		f := 0.0
-		_ = f
-	}
-	r.Rows = make([]*bogoliubov.Scattering, len(omega))
-	r.Weight = make([]float64, len(omega))
-	for i, w := range omega {
-		r.Rows[i] = &bogoliubov.Scattering{Omega: w}
-		r.Weight[i] = l.spectrum(w) * l.spectrum(w)
+	b := l.begin(ground, o.Amplitude)
+	var in [3][]complex128
+	for c := range in {
+		in[c] = l.ingoing(departure(b, c, o.Amplitude), c, omega)
 	}
 	walker := prop.NewWalker(false)
 	for leg, t := range times {
@@ -126,18 +97,9 @@ func Stimulate(ctx context.Context, p flow.Profile, o Options) (*Response, error
 			if reads[out] != leg {
 				continue
 			}
-			inner := l.near[out]
-			if out == bogoliubov.U {
-				inner += l.left
-			} else {
-				inner -= l.right
-			}
-			window := l.window(out, l.near[out], l.far[out], math.Min(inner, l.taper()), l.taper())
-			for c := range 3 {
-				chi := departure(b, c, o.Amplitude)
-				for i, w := range omega {
-					_, waves := bogoliubov.Channels(w, l.up, l.down)
-					r.Rows[i].S[out][c] = l.amplitude(chi, window, out, waves[out], w, t) / in[i][c]
+			for c := range in {
+				for i, a := range l.outgoing(departure(b, c, o.Amplitude), out, omega, t) {
+					r.Rows[i].S[out][c] = a / in[c][i]
 				}
 			}
 		}
@@ -149,6 +111,20 @@ func Stimulate(ctx context.Context, p flow.Profile, o Options) (*Response, error
 	return r, nil
 }
 
+// carried lists what each lane of the batch carries: a packet of a channel with
+// a sign, or the flow alone.
+var carried = [lanes.Width]struct {
+	channel int
+	sign    float64
+}{
+	2 * bogoliubov.U: {bogoliubov.U, 1}, 2*bogoliubov.U + 1: {bogoliubov.U, -1},
+	2 * bogoliubov.D1: {bogoliubov.D1, 1}, 2*bogoliubov.D1 + 1: {bogoliubov.D1, -1},
+	2 * bogoliubov.D2: {bogoliubov.D2, 1}, 2*bogoliubov.D2 + 1: {bogoliubov.D2, -1},
+}
+
+// alone is a lane without a packet.
+const alone = lanes.Width - 1
+
 // begin returns the batch at time 0.
 func (l *layout) begin(ground *gpe.Stationary, amplitude float64) *lanes.Batch {
 	var packets [3][]complex128
@@ -157,7 +133,7 @@ func (l *layout) begin(ground *gpe.Stationary, amplitude float64) *lanes.Batch {
 	}
 	b := lanes.NewBatch(l.grid.N)
 	psi := make([]complex128, l.grid.N)
-	for lane, is := range lanesOf {
+	for lane, is := range carried {
 		for j, z := range ground.Field {
 			psi[j] = z * (1 + complex(is.sign*amplitude, 0)*packets[is.channel][j])
 		}
@@ -166,28 +142,41 @@ func (l *layout) begin(ground *gpe.Stationary, amplitude float64) *lanes.Batch {
 	return b
 }
 
-// departure returns χ for the packet of channel c: half the difference of the
-// two signs, which leaves out the second order, over the flow alone.
+// departure returns χ for the packet of channel c in units of its amplitude:
+// half the difference of the two signs, which leaves out the second order, over
+// the flow alone.
 func departure(b *lanes.Batch, c int, amplitude float64) []complex128 {
-	var plus, minus int
-	for lane, is := range lanesOf {
-		if is.channel == c && is.sign > 0 {
-			plus = lane
-		}
-		if is.channel == c && is.sign < 0 {
-			minus = lane
-		}
-	}
-	chi := b.Lane(nil, plus)
-	other, psi := b.Lane(nil, minus), b.Lane(nil, alone)
+	chi := b.Lane(nil, 2*c)
+	other, psi := b.Lane(nil, 2*c+1), b.Lane(nil, alone)
 	for j := range chi {
 		chi[j] = (chi[j] - other[j]) / (complex(2*amplitude, 0) * psi[j])
 	}
 	return chi
 }
 
-// piece is the longest leg, so that a run can be stopped: how many of them
-// there are at least.
+// ingoing returns the amplitudes of the packet of channel c at time 0.
+func (l *layout) ingoing(chi []complex128, c int, omega []float64) []complex128 {
+	window := l.before(c)
+	a := make([]complex128, len(omega))
+	for i, w := range omega {
+		waves, _ := bogoliubov.Channels(w, l.up, l.down)
+		a[i] = l.amplitude(chi, window, c, waves[c], w, 0)
+	}
+	return a
+}
+
+// outgoing returns the amplitudes of the outgoing waves of channel c at time t.
+func (l *layout) outgoing(chi []complex128, c int, omega []float64, t float64) []complex128 {
+	window := l.after(c)
+	a := make([]complex128, len(omega))
+	for i, w := range omega {
+		_, waves := bogoliubov.Channels(w, l.up, l.down)
+		a[i] = l.amplitude(chi, window, c, waves[c], w, t)
+	}
+	return a
+}
+
+// pieces is in how many legs, at least, a run is cut so that it can be stopped.
 const pieces = 100
 
 // times returns the ends of the legs, and at which of them each outgoing
@@ -195,16 +184,14 @@ const pieces = 100
 func (l *layout) times() (times []float64, reads [3]int) {
 	order := []int{0, 1, 2}
 	sort.Slice(order, func(i, j int) bool { return l.read[order[i]] < l.read[order[j]] })
-	end := l.read[order[2]]
-	from := 0.0
+	from, last := 0.0, l.read[order[2]]
 	for _, c := range order {
-		if n := math.Ceil((l.read[c] - from) / end * pieces); n > 0 {
-			for i := 1.0; i <= n; i++ {
-				times = append(times, from+(l.read[c]-from)*i/n)
-			}
+		to := l.read[c]
+		for i, n := 1.0, math.Ceil((to-from)/last*pieces); i <= n; i++ {
+			times = append(times, from+(to-from)*i/n)
 		}
 		reads[c] = len(times) - 1
-		from = l.read[c]
+		from = to
 	}
 	return times, reads
 }
@@ -212,7 +199,7 @@ func (l *layout) times() (times []float64, reads [3]int) {
 // middle returns count frequencies across the part of the band in which the
 // packets have more than a thousandth of their peak norm.
 func (l *layout) middle(count int) []float64 {
-	// Where I₀ has fallen so far, by bisection on the rising half.
+	// The spectrum rises up to the middle of the band.
 	low, high := 0.0, l.top/2
 	for range 60 {
 		if m := (low + high) / 2; l.spectrum(m)*l.spectrum(m) < 1e-3 {
