@@ -2,6 +2,7 @@ package probe
 
 import (
 	"math"
+	"slices"
 
 	"tailrace/gpe"
 	"tailrace/gpe/bogoliubov"
@@ -30,6 +31,7 @@ type layout struct {
 	length, reach float64 // of the ring, and upstream of the horizon
 	points        int
 	grid          gpe.Grid
+	shortest      [3]float64 // wavenumbers of the shortest ingoing waves
 }
 
 // flat is how far a flow may be from its ends, relatively, where waves are told
@@ -52,7 +54,6 @@ func newLayout(p flow.Profile, o Options) *layout {
 	// Fastest and slowest of every channel over the part of the band that
 	// carries more than a thousandth of the peak.
 	var in, out [3]extent
-	shortest := 0.0
 	for i := 1; i < crowd; i++ {
 		omega := l.top * float64(i) / crowd
 		if l.spectrum(omega) < 1e-3 {
@@ -62,7 +63,7 @@ func newLayout(p flow.Profile, o Options) *layout {
 		for c := range 3 {
 			in[c].add(math.Abs(a[c].Speed))
 			out[c].add(math.Abs(b[c].Speed))
-			shortest = math.Max(shortest, math.Max(math.Abs(a[c].K), math.Abs(b[c].K)))
+			l.shortest[c] = math.Max(l.shortest[c], math.Abs(a[c].K))
 		}
 	}
 	margin := [3]float64{-l.left, l.right, l.right}
@@ -97,6 +98,7 @@ func newLayout(p flow.Profile, o Options) *layout {
 	if round := out[bogoliubov.D1].most * (last + l.duration); round > reach[0]+reach[1]+seam {
 		reach[1] = round - reach[0] - seam
 	}
+	shortest := slices.Max(l.shortest[:])
 	l.length, l.reach = reach[0]+reach[1]+seam, reach[0]
 	l.points = points(l.length / math.Pi * o.Resolution * (finest*shortest + math.Abs(l.down.Velocity-l.up.Velocity)))
 	return l
@@ -111,6 +113,34 @@ const finest = 3.5
 // width 1 at dx = 0.52) amplitudes are right to 10⁻³, at 0.12 (the same of width
 // 0.5 at dx = 0.66) to 5·10⁻².
 const rounding = 0.01
+
+// timeStep returns the longest time step that the grid takes and with which the
+// ingoing waves' frequencies are right to steadiness over the duration, in
+// which they have to stay what the flow's equations say they are. Strang's
+// splitting turns a wave in the fluid's frame by ε′dt in a step,
+//
+//	cos ε′dt = cos(k²dt/2) − c²dt sin(k²dt/2).
+func (l *layout) timeStep() float64 {
+	dt := 0.9 * l.grid.MaxTimeStep()
+	for {
+		worst := 0.0
+		for c, k := range l.shortest {
+			speed := l.side(c).SoundSpeed
+			sin, cos := math.Sincos(k * k * dt / 2)
+			shift := math.Acos(cos-speed*speed*dt*sin)/dt - bogoliubov.Energy(k, speed)
+			worst = math.Max(worst, math.Abs(shift)*l.duration)
+		}
+		if worst <= steadiness {
+			return dt
+		}
+		dt *= 0.9
+	}
+}
+
+// steadiness is how far a packet's phase may be off after its duration because
+// of the time step. The packets' spectrum changes by less than its own size over
+// the inverse of that, so that amplitudes are right to about as much.
+const steadiness = 0.005
 
 // ground returns the flow on the first grid that resolves it.
 func (l *layout) ground(p flow.Profile, law fluid.Law) (*gpe.Stationary, error) {

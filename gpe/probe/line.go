@@ -14,6 +14,7 @@ type Line struct {
 	Temperature float64 // in m c₀²
 	Intercept   float64
 	Bend        float64 // weighted r.m.s. distance of the points from the line
+	Thermal     float64 // temperature of the best line without intercept
 }
 
 // FitLine fits the line to |α|² = |S_ud1|² and |β|² = |S_d2d1|² of at least
@@ -27,7 +28,7 @@ func FitLine(rows []*bogoliubov.Scattering, weight []float64) Line {
 		omega[i] = s.Omega
 	}
 	intercept, slope := stat.LinearRegression(omega, ratio, weight, false)
-	var sum, total float64
+	var sum, total, square, product float64
 	for i, y := range ratio {
 		w := 1.0
 		if weight != nil {
@@ -36,8 +37,10 @@ func FitLine(rows []*bogoliubov.Scattering, weight []float64) Line {
 		off := y - intercept - slope*omega[i]
 		sum += w * off * off
 		total += w
+		square += w * omega[i] * omega[i]
+		product += w * omega[i] * y
 	}
-	return Line{Temperature: -1 / slope, Intercept: intercept, Bend: math.Sqrt(sum / total)}
+	return Line{Temperature: -1 / slope, Intercept: intercept, Bend: math.Sqrt(sum / total), Thermal: -square / product}
 }
 
 // At returns the line's ln(|β|²/|α|²) at frequency omega.
@@ -106,6 +109,9 @@ type Comparison struct {
 	ScatteredAlpha2, ScatteredBeta2 []float64
 	LogRatio, ScatteredLogRatio     []float64
 	Line, ScatteredLine             Line
+	// Emission is |S_ud2|², which is also what a horizon emits on its own, as
+	// stimulated by the packet of negative norm.
+	Emission, ScatteredEmission []float64
 	// Worst is the largest relative difference of |α|² or |β|² where Weight is
 	// above a hundredth.
 	Worst float64
@@ -123,6 +129,7 @@ func (r *Response) Compare() (*Comparison, error) {
 		ScatteredAlpha2: squares(rows, bogoliubov.U, bogoliubov.D1),
 		ScatteredBeta2:  squares(rows, bogoliubov.D2, bogoliubov.D1),
 		LogRatio:        logRatio(r.Rows), ScatteredLogRatio: logRatio(rows),
+		Emission: squares(r.Rows, bogoliubov.U, bogoliubov.D2), ScatteredEmission: squares(rows, bogoliubov.U, bogoliubov.D2),
 		Line: r.Line(), ScatteredLine: FitLine(rows, r.Weight),
 	}
 	for i, w := range c.Weight {

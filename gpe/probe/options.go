@@ -1,7 +1,9 @@
 package probe
 
 import (
-	"tailrace/gpe"
+	"math"
+
+	"tailrace/gpe/flow"
 	"tailrace/gpe/fluid"
 )
 
@@ -10,8 +12,9 @@ type Options struct {
 	// Omega are the frequencies at which the answer is read, rising, between
 	// none and all of the packet's band; nil for 40 across the middle of it.
 	Omega []float64
-	// Top is where the packet's band ends, as a share of ω_max; 0 is 0.95.
-	// The closer to 1, the longer the slowest waves take to get away.
+	// Top is where the packet's band ends, as a share of ω_max; 0 is 8 times
+	// the horizon's κ/2π, where hardly anything is emitted, but at most 0.95:
+	// the closer to 1, the longer the slowest waves take to get away.
 	Top float64
 	// Concentration is how well the packet is confined in time: outside its
 	// duration it is about exp(−Concentration) of its peak, as is its spectrum
@@ -22,10 +25,9 @@ type Options struct {
 	Amplitude float64
 	// Resolution divides the grid's spacing; 0 is 1.
 	Resolution float64
-	// TimeStep is the time step as a share of the grid's longest, and Scheme
-	// the splitting; 0 and none are 0.25 and Strang's.
+	// TimeStep is the time step of Strang's splitting; 0 is one that shifts
+	// frequencies too little to matter.
 	TimeStep float64
-	Scheme   gpe.Scheme
 	// Law is the fluid's; small waves do not depend on it, as the coupling is
 	// adjusted to the flow's own speed of sound.
 	Law fluid.Law
@@ -33,21 +35,18 @@ type Options struct {
 	Progress func(done float64)
 }
 
-func (o Options) filled() Options {
+// filled returns the options with their defaults for a flow.
+func (o Options) filled(horizon flow.Horizon, omegaMax float64) Options {
 	set := func(v *float64, value float64) {
 		if *v == 0 {
 			*v = value
 		}
 	}
-	set(&o.Top, 0.95)
+	set(&o.Top, math.Min(0.95, 8*horizon.Temperature/omegaMax))
 	set(&o.Concentration, 13)
 	set(&o.Amplitude, 1e-4)
 	set(&o.Resolution, 1)
-	set(&o.TimeStep, 0.25)
-	if o.Scheme.Name == "" {
-		o.Scheme = gpe.Strang()
-	}
-	if !(o.Top > 0 && o.Top < 1 && o.Concentration > 0 && o.Amplitude > 0 && o.Resolution > 0 && o.TimeStep > 0 && o.TimeStep <= 1) {
+	if !(o.Top > 0 && o.Top < 1 && o.Concentration > 0 && o.Amplitude > 0 && o.Resolution > 0 && o.TimeStep >= 0) {
 		panic("probe: an option is out of range")
 	}
 	return o

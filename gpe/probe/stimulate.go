@@ -49,18 +49,18 @@ type Response struct {
 // or uniform ends, and those of gpe.NewStationary and gpe.NewPropagator. It
 // panics when an option is out of range.
 func Stimulate(ctx context.Context, p flow.Profile, o Options) (*Response, error) {
-	o = o.filled()
 	scatterer, err := bogoliubov.NewScatterer(p)
 	if err != nil {
 		return nil, err
 	}
+	up, down, horizon := p.Ends()
+	o = o.filled(horizon, scatterer.MaxFrequency())
 	l := newLayout(p, o)
 	omega := o.Omega
 	if omega == nil {
 		omega = l.middle(40)
 	}
-	r := &Response{Up: l.up, Down: l.down, OmegaMax: scatterer.MaxFrequency(), scatterer: scatterer}
-	_, _, r.Horizon = p.Ends()
+	r := &Response{Up: up, Down: down, Horizon: horizon, OmegaMax: scatterer.MaxFrequency(), scatterer: scatterer}
 	for i, w := range omega {
 		if !(w > 0 && w < l.top) || i > 0 && w <= omega[i-1] {
 			return nil, &FrequencyError{w, l.top}
@@ -73,7 +73,10 @@ func Stimulate(ctx context.Context, p flow.Profile, o Options) (*Response, error
 		return nil, err
 	}
 	times, reads := l.times()
-	prop, err := gpe.NewPropagator(l.grid, o.Law, ground, nil, o.Scheme, o.TimeStep*l.grid.MaxTimeStep(), times)
+	if o.TimeStep == 0 {
+		o.TimeStep = l.timeStep()
+	}
+	prop, err := gpe.NewPropagator(l.grid, o.Law, ground, nil, gpe.Strang(), o.TimeStep, times)
 	if err != nil {
 		return nil, err
 	}
