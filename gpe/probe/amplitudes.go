@@ -64,11 +64,11 @@ func (l *layout) before(c int) []float64 {
 // after returns the window over the outgoing waves of channel c when they are
 // read. Its inner edge is clear of the horizon, where the flow is not uniform.
 func (l *layout) after(c int) []float64 {
-	clear := l.right
+	uniform := l.right
 	if c == bogoliubov.U {
-		clear = -l.left
+		uniform = -l.left
 	}
-	return l.window(c, l.end[c], l.end[c].least-clear)
+	return l.window(c, l.end[c], l.end[c].least-uniform)
 }
 
 // window returns a smooth window that is 1 at the given distances from the

@@ -36,7 +36,7 @@
 // packets have tails, about exp(−Concentration) of their peak, that are still at
 // the horizon, or cut by a window's edge, when all is read; they matter where
 // the packet is weak. By default |α|² and |β|² are right to 0.7 % where the
-// packet has a hundredth of its peak norm, and to 0.1 % in its middle.
+// packet has a hundredth of its peak norm and to 0.2 % where it has half.
 //
 // # What the slope means
 //

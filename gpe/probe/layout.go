@@ -1,13 +1,13 @@
 package probe
 
 import (
+	"fmt"
 	"math"
 	"slices"
 
 	"tailrace/gpe"
 	"tailrace/gpe/bogoliubov"
 	"tailrace/gpe/flow"
-	"tailrace/gpe/fluid"
 )
 
 // layout says where and when: all packets are at the horizon at the same time,
@@ -31,6 +31,7 @@ type layout struct {
 	length, reach float64 // of the ring, and upstream of the horizon
 	points        int
 	grid          gpe.Grid
+	step          float64    // in time
 	shortest      [3]float64 // wavenumbers of the shortest ingoing waves
 }
 
@@ -142,11 +143,32 @@ func (l *layout) timeStep() float64 {
 // the inverse of that, so that amplitudes are right to about as much.
 const steadiness = 0.005
 
+// most is how many points times steps a probe may take: a minute or two on one
+// processor with vector units.
+const most = 5e9
+
+// WorkError reports a flow that would take too long to probe: one hardly beyond
+// the speed of sound, whose waves are slow and long, or a very sharp one.
+type WorkError struct {
+	Points int
+	Steps  float64
+}
+
+func (e *WorkError) Error() string {
+	return fmt.Sprintf("probing this flow would take %d points times %.2g steps, at most %.0e together are allowed; take a flow with a larger Mach number downstream, a smoother step, or a longer time step", e.Points, e.Steps, most)
+}
+
 // ground returns the flow on the first grid that resolves it.
-func (l *layout) ground(p flow.Profile, law fluid.Law) (*gpe.Stationary, error) {
+func (l *layout) ground(p flow.Profile, o Options) (*gpe.Stationary, error) {
 	for {
 		l.grid = gpe.NewGrid(l.points, l.length, l.horizon-l.reach)
-		s, err := gpe.NewStationary(l.grid, law, p, seamWidth)
+		if l.step = o.TimeStep; l.step == 0 {
+			l.step = l.timeStep()
+		}
+		if steps := slices.Max(l.read[:]) / l.step; steps*float64(l.points) > most {
+			return nil, &WorkError{l.points, steps}
+		}
+		s, err := gpe.NewStationary(l.grid, o.Law, p, seamWidth)
 		if err != nil || s.Rounding <= rounding {
 			return s, err
 		}

@@ -45,8 +45,9 @@ type Response struct {
 
 // Stimulate sends packets of all ingoing channels at the horizon of p in the
 // full equation and reads the outgoing waves. Errors are ctx's, a
-// *FrequencyError, those of bogoliubov.NewScatterer for flows without a horizon
-// or uniform ends, and those of gpe.NewStationary and gpe.NewPropagator. It
+// *FrequencyError, a *WorkError, those of bogoliubov.NewScatterer for flows
+// without a horizon or uniform ends, and those of gpe.NewStationary and
+// gpe.NewPropagator. It
 // panics when an option is out of range.
 func Stimulate(ctx context.Context, p flow.Profile, o Options) (*Response, error) {
 	scatterer, err := bogoliubov.NewScatterer(p)
@@ -68,15 +69,12 @@ func Stimulate(ctx context.Context, p flow.Profile, o Options) (*Response, error
 		r.Rows = append(r.Rows, &bogoliubov.Scattering{Omega: w})
 		r.Weight = append(r.Weight, l.spectrum(w)*l.spectrum(w))
 	}
-	ground, err := l.ground(p, o.Law)
+	ground, err := l.ground(p, o)
 	if err != nil {
 		return nil, err
 	}
 	times, reads := l.times()
-	if o.TimeStep == 0 {
-		o.TimeStep = l.timeStep()
-	}
-	prop, err := gpe.NewPropagator(l.grid, o.Law, ground, nil, gpe.Strang(), o.TimeStep, times)
+	prop, err := gpe.NewPropagator(l.grid, o.Law, ground, nil, gpe.Strang(), l.step, times)
 	if err != nil {
 		return nil, err
 	}

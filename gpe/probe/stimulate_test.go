@@ -169,6 +169,10 @@ func TestStimulateRefuses(t *testing.T) {
 	if _, err := Stimulate(context.Background(), p, Options{Omega: []float64{0.1, 0.7}}); !errors.As(err, &frequency) || frequency.Omega != 0.7 {
 		t.Errorf("a frequency above ω_max gives %v", err)
 	}
+	var work *WorkError
+	if _, err := Stimulate(context.Background(), must(flow.HalfSoliton(0.99)), Options{}); !errors.As(err, &work) {
+		t.Errorf("a flow hardly beyond the speed of sound gives %v", err)
+	}
 	ctx, cancel := context.WithCancel(context.Background())
 	stopped := 0.0
 	_, err := Stimulate(ctx, p, Options{Concentration: 7, Progress: func(done float64) { stopped = done; cancel() }})
