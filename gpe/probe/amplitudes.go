@@ -34,7 +34,8 @@ func (l *layout) side(c int) flow.State {
 func (l *layout) amplitude(chi []complex128, window []float64, c int, w bogoliubov.PlaneWave, omega, t float64) complex128 {
 	s := l.side(c)
 	k := w.K * float64(w.Norm)
-	var plus, minus complex128 // χ at k, and the conjugate of χ at −k
+	k -= l.shift(k, s.SoundSpeed) / w.Speed // where the stepped equation has this frequency
+	var plus, minus complex128              // χ at k, and the conjugate of χ at −k
 	turn := cmplx.Rect(1, -k*l.grid.Dx)
 	var e complex128
 	for j, z := range chi {

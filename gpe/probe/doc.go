@@ -28,15 +28,14 @@
 //
 // # What is left of errors
 //
-// Three things, each of which tests converge. The time step shifts the
-// frequency of the short ingoing waves by dt² times something, so that norm is
-// compared at frequencies that differ a little: an error that goes with the
-// slope of the packet's spectrum, changes sign in its middle and hardly touches
-// temperatures. The grid rounds the flow where it is sharper than the grid. And
-// packets have tails, about exp(−Concentration) of their peak, that are still at
-// the horizon, or cut by a window's edge, when all is read; they matter where
-// the packet is weak. By default |α|² and |β|² are right to 0.7 % where the
-// packet has a hundredth of its peak norm and to 0.2 % where it has half.
+// The time step shifts the frequency of the short ingoing waves; amplitudes are
+// read at the wavenumbers that they then have, after which nothing is left of it
+// in a uniform flow and, at the horizon, something that falls as dt². The grid
+// rounds the flow where it is sharper than the grid. And packets have tails,
+// about exp(−Concentration) of their peak, that are still at the horizon, or cut
+// by a window's edge, when all is read; they matter where the packet is weak. By
+// default |α|² and |β|² are right to 0.5 % where the packet has at least a
+// hundredth of its peak norm, and the line's temperature to 10⁻³.
 //
 // # What the slope means
 //

@@ -19,6 +19,17 @@ func (e *FrequencyError) Error() string {
 	return fmt.Sprintf("the frequency %.4g cannot be read from packets of frequencies 0 to %.4g; leave it out, and list the others rising", e.Omega, e.Top)
 }
 
+// UnsteadyError reports a flow that did not stay as it was while it was probed.
+type UnsteadyError struct{ Departure float64 }
+
+func (e *UnsteadyError) Error() string {
+	return fmt.Sprintf("the flow moved by %.1g of its density while it was probed, at most %g is allowed; use a shorter time step or a finer grid", e.Departure, steady)
+}
+
+// steady is how far a flow may move: the change of its scattering is about as
+// large.
+const steady = 1e-3
+
 // Response is what a flow makes of the packets.
 type Response struct {
 	Up, Down flow.State
@@ -45,7 +56,7 @@ type Response struct {
 
 // Stimulate sends packets of all ingoing channels at the horizon of p in the
 // full equation and reads the outgoing waves. Errors are ctx's, a
-// *FrequencyError, a *WorkError, those of bogoliubov.NewScatterer for flows
+// *FrequencyError, a *WorkError, an *UnsteadyError, those of bogoliubov.NewScatterer for flows
 // without a horizon or uniform ends, and those of gpe.NewStationary and
 // gpe.NewPropagator. It
 // panics when an option is out of range.
@@ -108,7 +119,9 @@ func Stimulate(ctx context.Context, p flow.Profile, o Options) (*Response, error
 	for _, s := range r.Rows {
 		s.UnitarityError = s.Unitarity()
 	}
-	r.Departure = ground.Departure(b, alone)
+	if r.Departure = ground.Departure(b, alone); !(r.Departure <= steady) {
+		return nil, &UnsteadyError{r.Departure}
+	}
 	return r, nil
 }
 
