@@ -123,6 +123,7 @@ func TestStimulateWithLongSteps(t *testing.T) {
 	if testing.Short() {
 		t.Skip("a second of propagation")
 	}
+	t.Parallel()
 	p := must(flow.UniformSwitch(0.75, 1, 0.5, 2))
 	agree(t, p, stimulate(t, p, Options{TimeStep: 0.18}), 0.005, 1e-3, 0.02)
 }
@@ -133,6 +134,7 @@ func TestStimulateConverges(t *testing.T) {
 	if testing.Short() {
 		t.Skip("a second of propagation")
 	}
+	t.Parallel()
 	p := must(flow.HalfSoliton(0.7))
 	var read [3][]float64
 	for i, dt := range []float64{0.03, 0.015, 0.0075} {
