@@ -103,12 +103,9 @@ func (p *Propagator) kineticAngles(dt float64) []float64 {
 	return angle
 }
 
+// kineticEnergy returns the energy of Fourier index q in the landscape's frame.
 func (p *Propagator) kineticEnergy(q int) float64 {
-	k := p.k[q]
-	if 2*q == p.Grid.N {
-		return k * k / 2
-	}
-	return k*k/2 + p.Landscape.Drift()*k
+	return kineticEnergy(p.Grid, q, p.Landscape.Drift())
 }
 
 // Steps returns the number of time steps to the last recorded time.

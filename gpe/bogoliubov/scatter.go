@@ -228,7 +228,7 @@ func (s *Scatterer) At(omega float64) (*Scattering, error) {
 		}
 		r.Dying[in] *= complex(dying2.scale, 0)
 	}
-	r.UnitarityError = r.unitarity(below)
+	r.UnitarityError = r.Unitarity()
 	return r, nil
 }
 
@@ -236,10 +236,11 @@ func (s *Scatterer) failure(omega float64, where string) error {
 	return fmt.Errorf("%w, at ω = %.6g (ω_max is %.6g), %s", ErrNotIntegrated, omega, s.omegaMax, where)
 }
 
-// unitarity returns the largest element of S†ηS − η.
-func (s *Scattering) unitarity(below bool) (worst float64) {
+// Unitarity returns the largest element of S†ηS − η in size, over the channels
+// that there are.
+func (s *Scattering) Unitarity() (worst float64) {
 	channels := 3
-	if !below {
+	if s.S[D2][D2] == 0 {
 		channels = 2
 	}
 	eta := [3]complex128{1, 1, -1}
