@@ -43,10 +43,11 @@ func TestPictureOfThermometers(t *testing.T) {
 	}
 	f := figure.Chart{Across: "width of the horizon", Unit: "ξ", LogX: true, Panels: []figure.ChartPanel{
 		{Ordinate: "temperature (*mc*^{2}/*k*_{B})", Log: true, Lines: []figure.Curve{{Name: "scattering, low frequency", X: widths, Y: scattered}, {Name: "κ/2π", X: widths, Y: classical}}},
-		{Ordinate: "over scattering", Levels: []float64{1}, Lines: []figure.Curve{{Name: "κ/2π", X: widths, Y: ratios["κ/2π"]}}},
+		{Ordinate: "over scattering", Log: true, Levels: []float64{1}, Lines: []figure.Curve{{Name: "κ/2π", X: widths, Y: ratios["κ/2π"]}, {Name: "width", X: widths, Y: ratios["width"]}}},
+		{Ordinate: "over scattering", Levels: []float64{1}, Range: figure.Range{Min: 0.85, Max: 1.15}},
 	}}
-	for _, m := range methods {
-		f.Panels[1].Lines = append(f.Panels[1].Lines, figure.Curve{Name: m, X: widths, Y: ratios[m]})
+	for _, m := range methods[1:] {
+		f.Panels[2].Lines = append(f.Panels[2].Lines, figure.Curve{Name: m, X: widths, Y: ratios[m]})
 	}
 	if err := f.Page().Save(folder, "thermometers"); err != nil {
 		t.Fatal(err)

@@ -20,6 +20,7 @@ type Spectrum struct {
 	Units                  Units
 	Spectrum               *bogoliubov.Spectrum
 	Temperature            float64 // of the cloud
+	Probe                  *Probe  // if one was sent
 }
 
 // flowOf returns a flow as JSON has it.
@@ -70,6 +71,9 @@ func (s *Spectrum) Result() any {
 		rows = append(rows, w)
 	}
 	o.set("rows", rows)
+	if s.Probe != nil {
+		o.set("probe", s.Probe.Result())
+	}
 	return o
 }
 
@@ -181,7 +185,7 @@ func (s *Spectrum) Figure() *figure.Page {
 	low := emission[len(emission)-1]
 	top.Range = figure.Range{Min: math.Max(low/2, emission[0]*1e-9), Max: emission[0] * 2}
 	if s.Temperature > 0 {
-		top.Lines = append(top.Lines, figure.Curve{Name: fmt.Sprintf("scattering, cloud at %s", u.say(s.Temperature, Temperature)), X: omega, Y: warm})
+		top.Lines = append(top.Lines, figure.Curve{Name: fmt.Sprintf("scattering, cloud at %s", axisMarkup.Replace(u.say(s.Temperature, Temperature))), X: omega, Y: warm})
 	}
 	return figure.Chart{Across: "frequency ω", Unit: u.Axis(Rate), LogX: true,
 		Panels: []figure.ChartPanel{

@@ -16,6 +16,7 @@ import (
 	"tailrace/analysis/report"
 	"tailrace/configs"
 	"tailrace/gpe/bogoliubov"
+	"tailrace/gpe/probe"
 )
 
 type spectrumOptions struct {
@@ -24,6 +25,7 @@ type spectrumOptions struct {
 	frequencies string
 	scans       []string
 	csv         string
+	probe       bool
 }
 
 func spectrumCommand() *cobra.Command {
@@ -45,6 +47,7 @@ are evenly spaced in the logarithm. Several --scan make every combination.`,
 	c.Flags().StringVar(&o.figures, "figures", "", "a folder for the figure, as PNG and SVG")
 	c.Flags().StringVar(&o.frequencies, "frequencies", "200", "how many, logarithmic up to ω_max, or a list of them in units of ω_max such as 0.1,0.5,0.9")
 	c.Flags().StringArrayVar(&o.scans, "scan", nil, "key=from:to:count[:log]")
+	c.Flags().BoolVar(&o.probe, "probe", false, "also send a packet of waves at the horizon in the full equation, and compare")
 	c.Flags().StringVar(&o.csv, "csv", "", "a file for the table of a scan")
 	return c
 }
@@ -57,7 +60,7 @@ func (o *spectrumOptions) run(ctx context.Context, name string) error {
 	if len(o.scans) > 0 {
 		return o.scan(ctx, config)
 	}
-	if o.csv != "" {
+	if o.csv != "" && len(o.scans) == 0 {
 		return &usageError{errors.New("--csv is the table of a scan: give a --scan too")}
 	}
 	s, err := config.Stationary()
@@ -84,10 +87,36 @@ func (o *spectrumOptions) run(ctx context.Context, name string) error {
 	if err := o.save(out.Figure(), "spectrum"); err != nil {
 		return err
 	}
+	if o.probe {
+		if out.Probe, err = o.send(ctx, s); err != nil {
+			return err
+		}
+		if err := o.save(out.Probe.Figure(), "probe"); err != nil {
+			return err
+		}
+	}
 	if o.asJSON {
 		return printJSON(out.JSON())
 	}
-	return out.Summary(os.Stdout)
+	if err := out.Summary(os.Stdout); err != nil || out.Probe == nil {
+		return err
+	}
+	return out.Probe.Summary(os.Stdout)
+}
+
+// send sends a packet at the horizon.
+func (o *spectrumOptions) send(ctx context.Context, s *configs.Stationary) (*report.Probe, error) {
+	bar := newProgress("per cent", 100, 0)
+	defer bar.end()
+	r, err := probe.Stimulate(ctx, s.Profile, probe.Options{Progress: func(done float64) { bar.update(int(100 * done)) }})
+	if err != nil {
+		return nil, err
+	}
+	c, err := r.Compare()
+	if err != nil {
+		return nil, err
+	}
+	return &report.Probe{Units: unitsOf(s), Comparison: c}, nil
 }
 
 func unitsOf(s *configs.Stationary) report.Units {
