@@ -25,8 +25,9 @@ type Input struct {
 	Predicted flow.Profile // nil: the flow over the step at the measured density
 	Step      Step         // with Predicted nil
 	Settings  Settings
-	Window    band.Window // empty: as the band's age allows
-	Cure      string      // what to change when the plateau is not clean
+	Window    band.Window         // empty: as the band's age allows
+	Response  bogoliubov.Response // of pictures; nil for none
+	Cure      string              // what to change when the plateau is not clean
 }
 
 // Step is the potential step, for a prediction at the measured density.

@@ -23,13 +23,14 @@ type expected struct {
 // expect puts the prediction together. A delay up to span will be asked for.
 func (a *Account) expect(sides *band.Sides, in Input, span float64) (*expected, error) {
 	e := &expected{theory: bogoliubov.NewBand(a.Predicted.Upstream, a.Predicted.Downstream, in.Problem.AtomsPerLength)}
+	e.theory.SetResponse(in.Response)
 	e.window = e.theory.Over(sides.Xu, sides.Xd, a.Scattered/2, span)
 	var err error
 	if e.pairing, err = e.window.Pairing(a.scatterer, in.Problem.Temperature); err != nil {
 		return nil, err
 	}
 	e.band = e.window.Paired(nil, e.pairing, 0)
-	e.background, err = a.scatterer.Background(sides.Xu, sides.Xd, in.Problem.AtomsPerLength, in.Problem.Temperature)
+	e.background, err = a.scatterer.Background(sides.Xu, sides.Xd, in.Problem.AtomsPerLength, in.Problem.Temperature, in.Response)
 	return e, err
 }
 
@@ -150,7 +151,7 @@ func (a *Account) fitTemplate(sides *band.Sides, e *expected, under []float64, i
 	first, err := temperature.FitTemplate(a.Cut.Less(under), family, profile, temperature.Sampling{})
 	if err == nil && math.Abs(math.Log(first.Factor)) > 0.1 {
 		var background []float64
-		if background, err = first.Background(a.profile, sides, in.Problem.AtomsPerLength, in.Problem.Temperature); err != nil {
+		if background, err = first.Background(a.profile, sides, in.Problem.AtomsPerLength, in.Problem.Temperature, in.Response); err != nil {
 			return err
 		}
 		under = a.Cut.Project(background)

@@ -100,12 +100,12 @@ func (f *Template) Temperature() (value, low, high float64) {
 
 // Background returns what lies under the band (bogoliubov.Scatterer.Background)
 // in the flow that was fitted: p, from which the family was made, drawn out.
-func (f *Template) Background(p flow.Profile, s *band.Sides, atomsPerLength, cloud float64) ([]float64, error) {
+func (f *Template) Background(p flow.Profile, s *band.Sides, atomsPerLength, cloud float64, response bogoliubov.Response) ([]float64, error) {
 	scatterer, err := bogoliubov.NewScatterer(flow.Stretched{Profile: p, Factor: f.Factor})
 	if err != nil {
 		return nil, err
 	}
-	return scatterer.Background(s.Xu, s.Xd, atomsPerLength, cloud)
+	return scatterer.Background(s.Xu, s.Xd, atomsPerLength, cloud, response)
 }
 
 // Saturated reports that the fit lies where sharper horizons are no hotter: the

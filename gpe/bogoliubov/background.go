@@ -2,7 +2,6 @@ package bogoliubov
 
 import (
 	"math"
-	"math/cmplx"
 
 	"gonum.org/v1/gonum/integrate/quad"
 )
@@ -18,20 +17,21 @@ import (
 // at x and already through at x': it falls as the square of the distance and is
 // a few per cent of the band near the horizon. Positions are counted from the
 // horizon, which waves have left far enough for evanescent ones to have died.
-// The error is ErrNotIntegrated.
-func (s *Scatterer) Background(x, xp []float64, atomsPerLength, T float64) ([]float64, error) {
+// A response, unless nil, is that of pictures. The error is ErrNotIntegrated.
+func (s *Scatterer) Background(x, xp []float64, atomsPerLength, T float64, response Response) ([]float64, error) {
+	if response == nil {
+		response = func(ku, kd float64) float64 { return 1 }
+	}
 	omega, weight := s.backgroundRule(x, xp)
 	rows, err := s.All(omega)
 	if err != nil {
 		return nil, err
 	}
-	sum := make([]float64, len(x)*len(xp))
+	pairs := newPairs(x, xp)
 	nearest := math.Inf(1)
 	for _, v := range xp {
 		nearest = math.Min(nearest, v)
 	}
-	up, down := make([]complex128, len(x)), make([]complex128, len(xp))
-	partner, mate := make([]complex128, len(x)), make([]complex128, len(xp))
 	for q, r := range rows {
 		inU, outU, _ := upstreamWaves(r.Omega, s.up)
 		in1, in2, out1, out2 := downstreamWaves(r.Omega, s.down)
@@ -46,43 +46,78 @@ func (s *Scatterer) Background(x, xp []float64, atomsPerLength, T float64) ([]fl
 			if T > 0 {
 				factor /= math.Tanh(comoving / (2 * T))
 			}
-			for a, v := range x {
-				partner[a] = r.S[U][i] * outU.density(v)
-				up[a] = partner[a]
-				if i == U {
-					up[a] += inU.density(v)
-				}
+			// The mode's waves on either side, each with its amplitude.
+			up := []part{{outU, r.S[U][i]}}
+			if i == U {
+				up = append(up, part{inU, 1})
 			}
-			for b, v := range xp {
-				mate[b] = 0
-				down[b] = r.S[D1][i] * out1.density(v)
-				if out2.norm != 0 {
-					mate[b] = r.S[D2][i] * out2.density(v)
-					down[b] += mate[b]
-				} else if slow {
-					down[b] += r.Dying[i] * cmplx.Exp(1i*out2.k*complex(v, 0))
-				}
-				switch i {
-				case D1:
-					down[b] += in1.density(v)
-				case D2:
-					down[b] += in2.density(v)
-				}
+			down := []part{{out1, r.S[D1][i]}}
+			switch {
+			case out2.norm != 0:
+				down = append(down, part{out2, r.S[D2][i]})
+			case slow:
+				down = append(down, part{out2, r.Dying[i]})
 			}
-			for a := range x {
-				for b := range xp {
-					z := up[a]*cmplx.Conj(down[b]) - partner[a]*cmplx.Conj(mate[b])
-					sum[a*len(xp)+b] += factor * real(z)
+			switch i {
+			case D1:
+				down = append(down, part{in1, 1})
+			case D2:
+				down = append(down, part{in2, 1})
+			}
+			for nu, u := range up {
+				for nd, d := range down {
+					if nu == 0 && nd == 1 && out2.norm != 0 {
+						continue // the partners
+					}
+					pairs.add(u, d, factor*response(real(u.wave.k), real(d.wave.k)))
 				}
 			}
 		}
 	}
-	return sum, nil
+	return pairs.sum, nil
+}
+
+// part is a wave with the amplitude that it has in a mode.
+type part struct {
+	wave      wave
+	amplitude complex128
+}
+
+// pairs sums products of waves over a window.
+type pairs struct {
+	x, xp    []float64
+	up, down []complex128
+	sum      []float64
+}
+
+func newPairs(x, xp []float64) *pairs {
+	return &pairs{x, xp, make([]complex128, len(x)), make([]complex128, len(xp)), make([]float64, len(x)*len(xp))}
+}
+
+// add adds factor·Re[u(x) d*(x′)].
+func (p *pairs) add(u, d part, factor float64) {
+	for a, v := range p.x {
+		p.up[a] = complex(factor, 0) * u.amplitude * u.wave.density(v)
+	}
+	for b, v := range p.xp {
+		p.down[b] = d.amplitude * d.wave.density(v)
+	}
+	for a, z := range p.up {
+		row := p.sum[a*len(p.xp):][:len(p.xp)]
+		re, im := real(z), imag(z)
+		for b, w := range p.down {
+			row[b] += re*real(w) + im*imag(w)
+		}
+	}
 }
 
 // density returns the relative density wave (U+V) exp(ikx).
 func (w wave) density(x float64) complex128 {
 	sin, cos := math.Sincos(real(w.k) * x)
+	if k := imag(w.k); k != 0 {
+		fall := math.Exp(-k * x)
+		return w.sum * complex(fall*cos, fall*sin)
+	}
 	return w.sum * complex(cos, sin)
 }
 

@@ -31,7 +31,7 @@ type Band struct {
 	top      float64 // k_d at ω_max
 	limit    float64 // ω_max
 	upTop    float64 // |k_u| at ω_max
-	response func(k float64) float64
+	response Response
 
 	rules [bandLevels]struct {
 		once sync.Once
@@ -73,10 +73,14 @@ func NewBand(up, down flow.State, atomsPerLength float64) *Band {
 	return b
 }
 
-// SetResponse makes the band that of pictures in which a density wave k appears
-// with the given factor: the response of imaging and pixels. It is called
-// before the band is used.
-func (b *Band) SetResponse(response func(k float64) float64) { b.response = response }
+// Response is the factor with which the product of a density wave ku upstream
+// and one kd downstream appears in pictures: that of imaging and pixels for each
+// of them, and that of a position which is not known for the two together.
+type Response func(ku, kd float64) float64
+
+// SetResponse makes the band that of such pictures. It is called before the
+// band is used.
+func (b *Band) SetResponse(r Response) { b.response = r }
 
 // makeRule returns the Gauss–Legendre rule of n points in y, where
 // k_d = k_top(1 − y²): at the top of the branch the group speed vanishes in
@@ -102,7 +106,7 @@ func (b *Band) makeRule(n int) bandRule {
 		// dω = w_d dk_d = w_d · 2 k_top y dy.
 		r.weight[i] = math.Sqrt(su*sd*math.Max(wd, 0)/wu) * 2 * b.top * yi * w[i] / (math.Pi * b.atoms)
 		if b.response != nil {
-			r.weight[i] *= b.response(ku) * b.response(kd)
+			r.weight[i] *= b.response(ku, kd)
 		}
 	}
 	return r
