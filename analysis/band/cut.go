@@ -49,6 +49,10 @@ type Cut struct {
 	ranges [][2]int  // of downstream points, for each upstream point and bin
 	down   int       // downstream points
 	base   []float64 // taken off, or nil
+
+	// Block is how many neighbouring shots Resample draws together, so that a
+	// slow drift counts; 0 is 1.
+	Block int
 }
 
 // NewCut averages along the band of geometry g.
@@ -180,13 +184,18 @@ func (c *Cut) Covariance() *mat.SymDense {
 }
 
 // Resample sets dst to the cut of a bootstrap sample: shots drawn with
-// replacement.
+// replacement, in blocks.
 func (c *Cut) Resample(dst []float64, r *rand.Rand) {
 	rows, _ := c.Shot.Dims()
 	clear(dst)
-	for range rows {
-		for k, v := range c.Shot.RawRowView(r.IntN(rows)) {
-			dst[k] += v
+	block := max(1, c.Block)
+	for drawn := 0; drawn < rows; {
+		first := r.IntN(rows)
+		for i := 0; i < block && drawn < rows; i++ {
+			for k, v := range c.Shot.RawRowView((first + i) % rows) {
+				dst[k] += v
+			}
+			drawn++
 		}
 	}
 	for k := range dst {

@@ -27,6 +27,7 @@ type Input struct {
 	Settings  Settings
 	Window    band.Window         // empty: as the band's age allows
 	Response  bogoliubov.Response // of pictures; nil for none
+	Memory    *Memory             // of theory, between campaigns; nil for none
 	Cure      string              // what to change when the plateau is not clean
 }
 
@@ -39,6 +40,7 @@ type Settings struct {
 	Fraction  float64 // of the way the partners have come that the window covers
 	Span      float64 // half the width of the cut, in units of 1/κ
 	Resamples int     // bootstrap
+	Block     int     // shots drawn together in it, 0 for 1
 	Shuffles  int     // null
 	Seed      uint64
 	// HeightError is the relative standard error of the predicted height of the
@@ -64,9 +66,10 @@ func (f Flow) Geometry() band.Geometry {
 type Account struct {
 	Time         float64
 	Trajectories int
-	Noiseless    bool // drawn from gpe.Moments: there is no chance in it
-	Measured     Flow // of the ensemble: windows' means
-	Predicted    Flow // of theory
+	Noiseless    bool       // drawn from gpe.Moments: there is no chance in it
+	Measured     Flow       // of the ensemble: windows' means
+	DensityError [2]float64 // standard errors of the densities upstream and downstream, of measured shots
+	Predicted    Flow       // of theory
 	MeanField    *Profile
 	Ensemble     *Profile
 	Map          *correlation.Map // positions from the horizon

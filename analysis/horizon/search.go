@@ -2,6 +2,8 @@ package horizon
 
 import (
 	"math"
+	"slices"
+	"sync"
 
 	"gonum.org/v1/gonum/mat"
 
@@ -18,6 +20,61 @@ type expected struct {
 	pairing    []complex128
 	band       []float64 // g₂ − 1 of the partners
 	background []float64 // and of what lies under them
+}
+
+// Memory keeps what theory says of one window between accounts of campaigns of
+// one flow: it takes longer to work out than all the rest. It may be used by
+// several goroutines.
+type Memory struct {
+	mu      sync.Mutex
+	xu, xd  []float64
+	bins    band.Bins
+	expect  *expected
+	family  *bogoliubov.Family
+	profile *bogoliubov.Profile
+}
+
+// fits reports whether what is remembered is of this window, and forgets it
+// otherwise. The caller holds mu.
+func (m *Memory) fits(s *band.Sides) bool {
+	if slices.Equal(m.xu, s.Xu) && slices.Equal(m.xd, s.Xd) {
+		return true
+	}
+	m.xu, m.xd, m.expect, m.family = s.Xu, s.Xd, nil, nil
+	return false
+}
+
+// expected is expect with a memory.
+func (a *Account) expected(sides *band.Sides, in Input, span float64) (*expected, error) {
+	if in.Memory == nil {
+		return a.expect(sides, in, span)
+	}
+	in.Memory.mu.Lock()
+	defer in.Memory.mu.Unlock()
+	if in.Memory.fits(sides) && in.Memory.expect != nil {
+		return in.Memory.expect, nil
+	}
+	e, err := a.expect(sides, in, span)
+	if err == nil {
+		in.Memory.expect = e
+	}
+	return e, err
+}
+
+// family is that of the template fit, with a memory.
+func (a *Account) family(sides *band.Sides, e *expected, in Input) (*bogoliubov.Family, *bogoliubov.Profile, error) {
+	if in.Memory != nil {
+		in.Memory.mu.Lock()
+		defer in.Memory.mu.Unlock()
+		if in.Memory.fits(sides) && in.Memory.family != nil && in.Memory.bins == a.Cut.Bins {
+			return in.Memory.family, in.Memory.profile, nil
+		}
+	}
+	f, p, err := temperature.NewFamily(a.Cut, sides, a.Predicted.Geometry(), e.theory, a.profile, in.Problem.Temperature)
+	if err == nil && in.Memory != nil {
+		in.Memory.family, in.Memory.profile, in.Memory.bins = f, p, a.Cut.Bins
+	}
+	return f, p, err
 }
 
 // expect puts the prediction together. A delay up to span will be asked for.
@@ -40,7 +97,7 @@ func (a *Account) read(sides *band.Sides, in Input) error {
 	kappa := 2 * math.Pi * a.Scattered
 	// A hot horizon's band is spread by the dispersion rather than by 1/κ.
 	span := math.Max(s.Span/kappa, s.Span/2/a.OmegaMax)
-	e, err := a.expect(sides, in, span)
+	e, err := a.expected(sides, in, span)
 	if err != nil {
 		return err
 	}
@@ -48,12 +105,13 @@ func (a *Account) read(sides *band.Sides, in Input) error {
 	a.findLine(sides, e, kappa, s)
 
 	a.Cut = band.NewCut(sides, g, band.NewBins(g, sides.Xu, sides.Xd, span))
+	a.Cut.Block = s.Block
 	a.PredictedCut = a.Cut.Project(e.band)
 	under := a.Cut.Project(e.background)
 	for b := range under {
 		a.PredictedCut[b] += under[b]
 	}
-	how := temperature.Sampling{Resamples: s.Resamples, Seed: s.Seed, HeightError: s.HeightError}
+	how := temperature.Sampling{Resamples: s.Resamples, Seed: s.Seed, HeightError: s.HeightError, Block: s.Block}
 	if sides.Noiseless {
 		how.Resamples = 0
 	}
@@ -143,8 +201,7 @@ func (a *Account) expectCoherence(in Input) error {
 // fitTemplate fits the family of the predicted flow, first with what lies under
 // the band of the predicted flow and then with that of the flow found.
 func (a *Account) fitTemplate(sides *band.Sides, e *expected, under []float64, in Input, how temperature.Sampling) error {
-	g := a.Predicted.Geometry()
-	family, profile, err := temperature.NewFamily(a.Cut, sides, g, e.theory, a.profile, in.Problem.Temperature)
+	family, profile, err := a.family(sides, e, in)
 	if err != nil {
 		return err
 	}

@@ -74,8 +74,12 @@ func FitCoherence(s *band.Sides, g band.Geometry, theory *bogoliubov.Band, omega
 	var resampled []complex128
 	for range how.Resamples {
 		clear(weight)
-		for range weight {
-			weight[r.IntN(len(weight))]++
+		for drawn := 0; drawn < len(weight); {
+			first := r.IntN(len(weight))
+			for i := 0; i < max(1, how.Block) && drawn < len(weight); i++ {
+				weight[(first+i)%len(weight)]++
+				drawn++
+			}
 		}
 		resampled = c.mean(resampled, weight)
 		for f, z := range resampled {

@@ -16,6 +16,9 @@ type Sampling struct {
 	// HeightError is the relative standard error of the predicted height of the
 	// band: that of the density and of the response of the imaging.
 	HeightError float64
+	// Block is how many neighbouring shots are drawn together; 0 is 1. (A cut
+	// has its own.)
+	Block int
 }
 
 // source returns the random numbers of one thermometer, and height the factor
