@@ -15,6 +15,7 @@ type Stationary struct {
 	Scale       lab.Scale // zero unless InLab
 	Temperature float64   // of the cloud, in m c₀²/k_B
 	PerXi       float64   // n₀ξ; 0 where the config gives no atoms
+	Law         fluid.Law
 }
 
 // Stationary returns the flow of a config: that of a swept step, of a waterfall
@@ -39,6 +40,36 @@ func (c *Config) Stationary() (*Stationary, error) {
 		return nil, err
 	}
 	return s, nil
+}
+
+// Length and Density return ξ and n₀ in the units of shots: m and atoms per m,
+// or ξ and atoms per ξ.
+func (s *Stationary) Length() float64 {
+	if s.InLab {
+		return s.Scale.Metres(1)
+	}
+	return 1
+}
+
+// Density returns n₀; see Length.
+func (s *Stationary) Density() float64 {
+	if s.InLab {
+		return s.Scale.AtomsPerMetre(1)
+	}
+	return s.PerXi
+}
+
+// Age returns how long the horizon has emitted at a time since the start, given
+// in s or in ħ/(m c₀²), in the latter; NaN stays.
+func (s *Stationary) Age(time float64) float64 {
+	ramp := s.Config.Step.Ramp
+	if s.InLab {
+		time, ramp = s.Scale.FromSeconds(time), s.Scale.FromSeconds(ramp)
+	}
+	if s.Config.Flow.Kind == FlowUniform {
+		ramp *= 4
+	}
+	return time - ramp
 }
 
 func (s *Stationary) uniform() error {
@@ -79,7 +110,7 @@ func (s *Stationary) swept() error {
 	if s.InLab && len(c.Record.Times) > 0 {
 		// The density is that of the true ground state, as for an ensemble.
 		if sc, err := c.Scenario(); err == nil {
-			s.Scale, s.Temperature, s.PerXi = sc.Scale, sc.Problem.Temperature, sc.Problem.AtomsPerLength
+			s.Scale, s.Temperature, s.PerXi, s.Law = sc.Scale, sc.Problem.Temperature, sc.Problem.AtomsPerLength, sc.Problem.Law
 			s.Profile, err = sc.Predicted()
 			return err
 		}
@@ -102,6 +133,7 @@ func (s *Stationary) swept() error {
 		z := c.in(&s.Scale)
 		depth, width, speed, s.Temperature, s.PerXi = z.depth, z.width, z.speed, z.temperature, s.Scale.AtomsPerHealingLength
 	}
+	s.Law = law
 	t, err := flow.Sweep(law, speed, depth, width)
 	if err != nil {
 		key := "step.speed"

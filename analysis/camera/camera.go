@@ -18,38 +18,27 @@ type Camera struct {
 	ReadNoise      float64 // standard deviation of a pixel's density from the electronics, in n₀
 	NumberSpread   float64 // relative standard deviation of the atom number from shot to shot
 	Jitter         float64 // standard deviation of the step's position from shot to shot
+	// Points says that the pixels are points, not averages over their side: those
+	// of a simulation.
+	Points bool
 }
 
-// Alignment is how well shots are laid on top of each other.
-type Alignment int
-
-// The alignments.
-const (
-	Exact   Alignment = iota // by the step's position, to a fraction of a pixel
-	ByPixel                  // by whole pixels: a rest of up to half a pixel is left
-	None                     // not at all: the step's jitter is left
-)
-
 // Response returns the response of pictures: the point-spread function and the
-// pixels for each wave, and for the two together what alignment leaves unknown,
-// which shifts both alike.
-func (c Camera) Response(a Alignment) bogoliubov.Response {
+// pixels for each wave, and for the two together a common shift that is not
+// known, of standard deviation rest: what alignment leaves of the step's position.
+func (c Camera) Response(rest float64) bogoliubov.Response {
 	return func(ku, kd float64) float64 {
-		r := c.wave(ku) * c.wave(kd)
 		// exp(i(k_u x − k_d x′)) under a common shift turns by (k_u − k_d).
-		q := ku - kd
-		switch a {
-		case ByPixel:
-			r *= sinc(q * c.Pixel / 2)
-		case None:
-			r *= math.Exp(-q * q * c.Jitter * c.Jitter / 2)
-		}
-		return r
+		q := (ku - kd) * rest
+		return c.wave(ku) * c.wave(kd) * math.Exp(-q*q/2)
 	}
 }
 
 // wave returns the factor with which a density wave appears.
 func (c Camera) wave(k float64) float64 {
+	if c.Points {
+		return 1
+	}
 	return math.Exp(-k*k*c.Resolution*c.Resolution/2) * sinc(k*c.Pixel/2)
 }
 
@@ -71,4 +60,40 @@ func (c Camera) share(d, dx float64) float64 {
 	}
 	edge := func(x float64) float64 { return math.Erf(x / (math.Sqrt2 * c.Resolution)) }
 	return dx / c.Pixel * (edge(d+c.Pixel/2) - edge(d-c.Pixel/2)) / 2
+}
+
+// Granularity returns the variance that a pixel has over its mean density from
+// atoms and photons alone, in n₀, for atomsPerLength atoms per healing length at
+// density 1, and how much of the atoms' part pixels i apart share, relative to
+// it: the point-spread function correlates neighbours.
+func (c Camera) Granularity(atomsPerLength float64) (variance float64, overlap []float64) {
+	if c.Points {
+		return 1 / (atomsPerLength * c.Pixel), []float64{1}
+	}
+	// ∫dk/2π |wave(k)|² exp(ikd): the overlap of two pixels' responses.
+	pixels := 1 + int(math.Ceil(6*c.Resolution/c.Pixel))
+	overlap = make([]float64, pixels+1)
+	top := 40 / c.Pixel
+	if c.Resolution > 0 {
+		top = math.Min(top, 7/c.Resolution)
+	}
+	const steps = 4000
+	for i := range overlap {
+		d := float64(i) * c.Pixel
+		for q := range steps {
+			k := top * (float64(q) + 0.5) / steps
+			w := c.wave(k)
+			overlap[i] += w * w * math.Cos(k*d) * top / steps / math.Pi
+		}
+	}
+	atoms := overlap[0] / atomsPerLength
+	variance = atoms
+	if c.PhotonsPerAtom > 0 {
+		variance += 1 / (c.PhotonsPerAtom * atomsPerLength * c.Pixel)
+	}
+	for i := range overlap {
+		overlap[i] /= atomsPerLength * variance
+	}
+	overlap[0] = 1
+	return variance, overlap
 }

@@ -41,7 +41,7 @@ func TestVirtualVariance(t *testing.T) {
 			t.Fatal(err)
 		}
 		shots := v.Draw(4000, 1)
-		response := math.Sqrt(c.camera.Response(Exact)(c.k, c.k))
+		response := math.Sqrt(c.camera.Response(0)(c.k, c.k))
 		want := math.Pow(size*response, 2) + c.camera.ReadNoise*c.camera.ReadNoise
 		if c.camera.PhotonsPerAtom > 0 {
 			want += 1 / (c.camera.PhotonsPerAtom * perXi * c.camera.Pixel)

@@ -94,7 +94,7 @@ func TestTryCampaign(t *testing.T) {
 	}
 	in := c.in
 	in.Window = near16
-	in.Response = cam.Response(camera.ByPixel)
+	in.Response = cam.Response(0.5 / math.Sqrt(12))
 	in.Settings.Resamples = 100
 	in.Settings.Shuffles = 200
 	in.Memory = new(Memory)

@@ -79,7 +79,12 @@ func (r *Run) flowFigure() *figure.Page {
 }
 
 func (r *Run) mapFigure() *figure.Page {
-	return r.mapOf(func(i, j int) float64 { return r.Account.Map.G2.At(i, j) }, "")
+	return r.mapWith(r.Problem.Grid.Dx)
+}
+
+// mapWith shows the map on pixels of the given size.
+func (r *Run) mapWith(pixel float64) *figure.Page {
+	return r.mapOf(func(i, j int) float64 { return r.Account.Map.G2.At(i, j) }, "", pixel)
 }
 
 // differenceFigure shows by how many standard errors the ensemble's map differs
@@ -89,11 +94,11 @@ func (r *Run) differenceFigure() *figure.Page {
 		return nil
 	}
 	n := len(r.Account.Map.X)
-	return r.mapOf(func(i, j int) float64 { return r.Beside.Difference[i*n+j] }, "(ensemble − exact)/standard error")
+	return r.mapOf(func(i, j int) float64 { return r.Beside.Difference[i*n+j] }, "(ensemble − exact)/standard error", r.Problem.Grid.Dx)
 }
 
 // mapOf shows a function of pairs of grid points.
-func (r *Run) mapOf(at func(i, j int) float64, quantity string) *figure.Page {
+func (r *Run) mapOf(at func(i, j int) float64, quantity string, dx float64) *figure.Page {
 	a, u := r.Account, r.Units
 	lo, hi := r.view()
 	var columns []int
@@ -120,8 +125,8 @@ func (r *Run) mapOf(at func(i, j int) float64, quantity string) *figure.Page {
 	}
 	// Single points show their own noise: smoothing over a healing length or so
 	// shows the band, which is wider.
-	f.Value = smooth(values, n, mapSmoothing/(float64(cell)*r.Problem.Grid.Dx))
-	f.Limit = figure.OffDiagonalLimit(f.Value, n, int(8*mapSmoothing/(float64(cell)*r.Problem.Grid.Dx)), 0.98)
+	f.Value = smooth(values, n, mapSmoothing/(float64(cell)*dx))
+	f.Limit = figure.OffDiagonalLimit(f.Value, n, int(8*mapSmoothing/(float64(cell)*dx)), 0.98)
 	g := a.Predicted.Geometry()
 	f.Band = figure.Curve{Name: fmt.Sprintf("predicted band; map smoothed, σ = %.2g %s", u.Value(mapSmoothing, Length), u.Axis(Length)),
 		X: []float64{0, u.Value(a.Window.UpFar*1.5, Length)},

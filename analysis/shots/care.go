@@ -225,7 +225,7 @@ type Aligned struct {
 	X     []float64 // pixels from the step
 	Shots moments.Shots
 	Index []int   // of each shot in the set
-	Rest  float64 // r.m.s. distance that is left between steps, in the set's unit
+	Rest  float64 // r.m.s. distance of the steps from where X has them, in the set's unit
 }
 
 // Align lays the shots on top of each other by the step, to whole pixels, over
@@ -241,13 +241,15 @@ func (s *Set) Align(rejected []Rejection, n Normalisation, unit float64) (*Align
 	a := &Aligned{}
 	var at []int
 	left, right := math.MaxInt, math.MaxInt
+	var rest, rest2 float64
 	for i := range s.Count {
 		if gone[i] {
 			continue
 		}
 		place := s.StepPosition[i] / s.Pixel
 		whole := int(math.Round(place))
-		a.Rest += (place - float64(whole)) * (place - float64(whole))
+		rest += place - float64(whole)
+		rest2 += (place - float64(whole)) * (place - float64(whole))
 		a.Index, at = append(a.Index, i), append(at, whole)
 		left, right = min(left, whole), min(right, s.Pixels-1-whole)
 	}
@@ -257,9 +259,11 @@ func (s *Set) Align(rejected []Rejection, n Normalisation, unit float64) (*Align
 	if left+right < 16 {
 		return nil, &Error{s.Path, "step_position", fmt.Sprintf("the step moves so far that only %d pixels are in every shot", left+right+1), "at least 17 are needed"}
 	}
-	a.Rest = math.Sqrt(a.Rest/float64(len(a.Index))) * s.Pixel
+	// The part of the rest that all share is known.
+	rest /= float64(len(a.Index))
+	a.Rest = math.Sqrt(math.Max(rest2/float64(len(a.Index))-rest*rest, 0)) * s.Pixel
 	for k := -left; k <= right; k++ {
-		a.X = append(a.X, float64(k)*s.Pixel)
+		a.X = append(a.X, (float64(k)-rest)*s.Pixel)
 	}
 	pixels := len(a.X)
 	a.Shots = moments.Shots{Pixels: pixels, Data: make([]float32, len(a.Index)*pixels)}

@@ -12,7 +12,9 @@ import (
 
 	"github.com/spf13/cobra"
 
+	"tailrace/analysis/band"
 	"tailrace/analysis/folder"
+	"tailrace/analysis/shots"
 	"tailrace/configs"
 	"tailrace/gpe/lanes"
 )
@@ -50,7 +52,7 @@ func run() int {
 	root.SetFlagErrorFunc(func(c *cobra.Command, err error) error {
 		return &usageError{fmt.Errorf("%w; %s --help lists what there is", err, c.CommandPath())}
 	})
-	root.AddCommand(runCommand(), spectrumCommand(), checkCommand(), examplesCommand())
+	root.AddCommand(runCommand(), spectrumCommand(), interpretCommand(), checkCommand(), examplesCommand())
 	root.PersistentPreRunE = func(*cobra.Command, []string) error {
 		if err := lanes.CheckKernel(); err != nil {
 			return &usageError{fmt.Errorf("%s = %q: %w", lanes.Variable, os.Getenv(lanes.Variable), err)}
@@ -75,7 +77,9 @@ func status(err error) int {
 	var config *configs.Error
 	var use *folder.UseError
 	var usage *usageError
-	if errors.As(err, &config) || errors.As(err, &use) || errors.As(err, &usage) {
+	var measured *shots.Error
+	var window *band.ErrWindow
+	if errors.As(err, &config) || errors.As(err, &use) || errors.As(err, &usage) || errors.As(err, &measured) || errors.As(err, &window) {
 		return inputFault
 	}
 	return failed

@@ -1,0 +1,307 @@
+package interpretation
+
+import (
+	"fmt"
+	"math"
+
+	"gonum.org/v1/gonum/stat"
+	"gonum.org/v1/gonum/stat/distuv"
+
+	"tailrace/analysis/band"
+	"tailrace/analysis/horizon"
+	"tailrace/analysis/shots"
+	"tailrace/gpe/bogoliubov"
+)
+
+// Explanation is a duller cause that a band, or its strength, could have, tested.
+type Explanation struct {
+	Name   string
+	Value  float64
+	Unit   string // of Value, as a dimension's name: "", "length", "temperature"
+	PValue float64
+	Found  bool // it is there and matters
+	Why    string
+}
+
+// certain is the p-value below which an explanation counts as found: one campaign
+// in a thousand is blamed for nothing.
+const certain = 1e-3
+
+func twoSided(z float64) float64 { return math.Erfc(math.Abs(z) / math.Sqrt2) }
+
+// explain tests them all.
+func (r *Interpretation) explain(p horizon.Pictures, sides *band.Sides) error {
+	raw, err := r.align(shots.Raw)
+	if err != nil {
+		return err
+	}
+	rawSides, err := r.sides(raw)
+	if err != nil {
+		return err
+	}
+	r.Explanations = []Explanation{
+		r.numberSpread(rawSides), r.jitter(p), r.crossTalk(sides), r.heat(sides), r.ripple(p), r.secondHorizon(p), r.tooFew(),
+	}
+	return nil
+}
+
+// offset returns the mean of the map over the window, and what chance makes of
+// it: the mean over shots of the product of the sides' means.
+func offset(s *band.Sides) (mean, err float64) {
+	products := make([]float64, s.Shots())
+	for i := range products {
+		products[i] = stat.Mean(s.U.RawRowView(i), nil) * stat.Mean(s.D.RawRowView(i), nil)
+	}
+	mean, sd := stat.MeanStdDev(products, nil)
+	return mean, sd / math.Sqrt(float64(len(products)))
+}
+
+// numberSpread asks for a correlation that does not follow the band's line: a
+// spread σ of the atom number makes a constant σ².
+func (r *Interpretation) numberSpread(raw *band.Sides) Explanation {
+	mean, err := offset(raw)
+	e := Explanation{Name: "spread of the atom number", Value: math.Sqrt(math.Max(mean, 0)), PValue: twoSided(mean / err)}
+	// What is left of it after normalising is what could matter.
+	left := 0.0
+	for _, v := range r.Systematics {
+		if v.What == "what goes with the number projected out" {
+			left = (v.Strength - r.Account.Null.Strength) / r.Account.Null.Spread()
+		}
+	}
+	e.Found = e.PValue < certain && mean > 0
+	e.Why = fmt.Sprintf("before normalising the window is correlated by %.2g as a whole, as a spread of %.2g %% would make it; a constant is no band, and projecting the number out instead of rescaling moves the band by %.1f standard deviations",
+		mean, 100*e.Value, left)
+	return e
+}
+
+// jitter asks by how much the step moves beyond what alignment knows: where the
+// mean density is steep, a step out of place by d changes it by d·n′.
+func (r *Interpretation) jitter(p horizon.Pictures) Explanation {
+	mean, _ := p.Mean()
+	e := Explanation{Name: "the step's position", Unit: "length", PValue: 1}
+	n := len(mean)
+	slope := make([]float64, n)
+	var largest float64
+	for k := 1; k < n-1; k++ {
+		slope[k] = (mean[k+1] - mean[k-1]) / (p.X[k+1] - p.X[k-1])
+		if math.Abs(p.X[k]) > 6 {
+			slope[k] = 0
+		}
+		largest = math.Max(largest, math.Abs(slope[k]))
+	}
+	var steep float64
+	for k := range slope {
+		if math.Abs(slope[k]) < 0.2*largest {
+			slope[k] = 0
+		}
+		steep += slope[k] * slope[k]
+	}
+	if steep == 0 {
+		e.Why = "the density has no step"
+		return e
+	}
+	// The same pattern laid elsewhere, where there is no step, is the noise.
+	project := func(shift int) (variance float64, ok bool) {
+		v := make([]float64, p.Shots.Count())
+		for i := range v {
+			row := p.Shots.Shot(i)
+			for k, s := range slope {
+				if s == 0 {
+					continue
+				}
+				if k+shift < 0 || k+shift >= n {
+					return 0, false
+				}
+				v[i] += s * (float64(row[k+shift]) - mean[k+shift]) / math.Sqrt(math.Max(mean[k+shift], 0.05))
+			}
+			v[i] /= steep
+		}
+		return stat.Variance(v, nil), true
+	}
+	here, _ := project(0)
+	var elsewhere []float64
+	pixel := p.X[1] - p.X[0]
+	for _, d := range []float64{-14, -11, -8, 8, 11, 14} {
+		if v, ok := project(int(d / pixel)); ok {
+			elsewhere = append(elsewhere, v)
+		}
+	}
+	if len(elsewhere) == 0 {
+		e.Why = "the picture is too small beside the step"
+		return e
+	}
+	noise, scatter := stat.Mean(elsewhere, nil), 0.0
+	if len(elsewhere) > 1 {
+		scatter = stat.StdDev(elsewhere, nil)
+	}
+	var scale float64 // of the pattern in units of √n
+	for k, s := range slope {
+		scale += s * s / math.Sqrt(math.Max(mean[k], 0.05)) / steep
+	}
+	moved := (here - noise) / (scale * scale)
+	known := r.Rest * r.Rest
+	err := math.Hypot(here*math.Sqrt(2/float64(p.Shots.Count())), scatter) / (scale * scale)
+	e.Value = math.Sqrt(math.Max(moved-known, 0))
+	e.PValue = twoSided(math.Max(moved-known, 0) / err)
+	e.Found = e.PValue < certain && e.Value > 0.3*math.Max(r.Input.Camera.Resolution, pixel)
+	e.Why = fmt.Sprintf("the density at the step scatters as if it were out of place by %.2g ξ beyond what alignment leaves (%.2g ξ): that blurs the band, and it reads too cold", e.Value, r.Rest)
+	return e
+}
+
+// crossTalk asks whether places that have nothing to do with each other are
+// correlated: both ends of the upstream window, farther apart than sound and
+// optics reach.
+func (r *Interpretation) crossTalk(s *band.Sides) Explanation {
+	e := Explanation{Name: "cross-talk in the pictures", PValue: 1}
+	var products []float64
+	count := 0
+	third := len(s.Xu) / 3
+	far := s.Xu[len(s.Xu)-third] - s.Xu[third-1]
+	for i := range s.Shots() {
+		row := s.U.RawRowView(i)
+		products = append(products, stat.Mean(row[:third], nil)*stat.Mean(row[len(row)-third:], nil))
+		count++
+	}
+	mean, sd := stat.MeanStdDev(products, nil)
+	err := sd / math.Sqrt(float64(count))
+	e.Value, e.PValue = mean, twoSided(mean/err)
+	// Neighbouring sound waves are correlated there by −1/(2π n c d²), and the
+	// number's normalisation makes a small constant.
+	allowed := 3 / (2 * math.Pi * r.Input.AtomsPerLength * far * far)
+	e.Found = e.PValue < certain && math.Abs(mean) > 2*allowed
+	e.Why = fmt.Sprintf("the two ends of the upstream window, %.3g ξ apart, are correlated by %.2g ± %.2g, where waves make at most %.1g: what is more comes from the camera or from the normalisation", far, mean, err, allowed)
+	return e
+}
+
+// heat asks how much of the band is due to phonons that were there already, and
+// whether it is stronger than vacuum and the cloud's temperature make it.
+func (r *Interpretation) heat(s *band.Sides) Explanation {
+	a := r.Account
+	e := Explanation{Name: "phonons already there", Unit: "temperature"}
+	theory := bogoliubov.NewBand(a.Predicted.Upstream, a.Predicted.Downstream, r.Input.AtomsPerLength)
+	theory.SetResponse(r.Input.Camera.Response(r.Rest))
+	w := theory.Over(s.Xu, s.Xd, a.Scattered/2, 1)
+	scatterer, err := bogoliubov.NewScatterer(r.Input.Predicted)
+	if err != nil {
+		e.Why = err.Error()
+		return e
+	}
+	rows, err := scatterer.All(w.Frequencies())
+	if err != nil {
+		e.Why = err.Error()
+		return e
+	}
+	height := func(T float64) float64 {
+		pairing := make([]complex128, len(rows))
+		for i, row := range rows {
+			pairing[i] = row.Pairing(T)
+		}
+		template := band.Template(s, w.Paired(nil, pairing, 0))
+		var sum float64
+		for _, v := range template.RawMatrix().Data {
+			sum += v * v
+		}
+		return 1 / math.Sqrt(sum) // the norm of the pattern
+	}
+	cold, config := height(0), height(r.Input.Temperature)
+	excess := (a.Null.Strength - 1) / a.Null.Spread()
+	e.PValue = twoSided(math.Max(excess, 0))
+	e.Value = r.Input.Temperature
+	if excess > 0 {
+		// The temperature that would explain the strength.
+		lo, hi := r.Input.Temperature, math.Max(1, 10*r.Input.Temperature)
+		for range 40 {
+			m := (lo + hi) / 2
+			if height(m) < config*a.Null.Strength {
+				lo = m
+			} else {
+				hi = m
+			}
+		}
+		e.Value = lo
+	}
+	e.Found = excess > 3.3 || config > 1.3*cold
+	e.Why = fmt.Sprintf("at the cloud's temperature the band is %.2f times as strong as from vacuum alone; it is measured at %.2f ± %.2f of that, which a cloud at the temperature given here would make", config/cold, a.Null.Strength, a.Null.Spread())
+	return e
+}
+
+// ripple asks for a standing pattern in the mean density, at wavelengths that
+// fit the window.
+func (r *Interpretation) ripple(p horizon.Pictures) Explanation {
+	e := Explanation{Name: "a ripple in the mean density", PValue: 1}
+	mean, meanError := p.Mean()
+	_, _, h := r.Input.Predicted.Ends()
+	w := r.Account.Window
+	for _, side := range []struct{ lo, hi float64 }{{w.UpFar, w.UpNear}, {w.DownNear, w.DownFar}} {
+		var x, y, sd []float64
+		for k, at := range p.X {
+			if at -= h.Position; at >= side.lo && at <= side.hi {
+				x, y, sd = append(x, at), append(y, mean[k]), append(sd, meanError[k])
+			}
+		}
+		level := stat.Mean(y, nil)
+		intercept, slope := stat.LinearRegression(x, y, nil, false)
+		var trials float64
+		best, amplitude := 0.0, 0.0
+		length := side.hi - side.lo
+		for m := 2.0; 2*math.Pi*m/length < math.Pi/(3*(x[1]-x[0])); m++ {
+			k := 2 * math.Pi * m / length
+			var c, s, variance float64
+			for i := range x {
+				d := y[i] - intercept - slope*x[i]
+				c += d * math.Cos(k*x[i])
+				s += d * math.Sin(k*x[i])
+				variance += sd[i] * sd[i] / 2
+			}
+			trials++
+			// |c + is|² has an exponential distribution of mean 2·variance.
+			if z := (c*c + s*s) / (2 * variance); z > best {
+				best, amplitude = z, 2*math.Hypot(c, s)/float64(len(x))/level
+			}
+		}
+		if pv := math.Min(1, 2*trials*math.Exp(-best)); pv < e.PValue {
+			e.PValue, e.Value = pv, amplitude
+		}
+	}
+	e.Found = e.PValue < certain && e.Value > 0.01
+	e.Why = fmt.Sprintf("the strongest wave in the mean density of the windows has %.2g %% of it; the same in every shot it makes no correlation, but one that wanders from shot to shot does, along lines of its own", 100*e.Value)
+	return e
+}
+
+// secondHorizon asks whether the flow falls below the speed of sound again
+// within the picture.
+func (r *Interpretation) secondHorizon(p horizon.Pictures) Explanation {
+	e := Explanation{Name: "a second horizon", Unit: "length", PValue: 1}
+	mean, meanError := p.Mean()
+	up := r.Account.Measured.Upstream
+	current := up.Density * up.Velocity
+	law := r.Input.Law
+	run := 0
+	for k, at := range p.X {
+		if at < r.Account.Window.DownNear {
+			continue
+		}
+		n := mean[k] - 3*meanError[k]
+		if n > 0 && current/n < law.SoundSpeed(n) {
+			if run++; run == 3 {
+				e.Value, e.Found, e.PValue = p.X[k-2], true, distuv.UnitNormal.Survival(3)
+				e.Why = fmt.Sprintf("%.3g ξ behind the step the density is so high that the flow, at the current of the upstream side, is slower than sound again: the region between may run away, which cavity tells", e.Value)
+				return e
+			}
+			continue
+		}
+		run = 0
+	}
+	e.Why = "at the current of the upstream side the flow stays faster than sound to the end of the picture"
+	return e
+}
+
+// tooFew asks whether the shots could show a band at all.
+func (r *Interpretation) tooFew() Explanation {
+	n := r.Account.Null
+	reach := 1 / n.Spread()
+	e := Explanation{Name: "too few shots", Value: math.Ceil(float64(r.Account.Trajectories) * math.Pow(5/reach, 2)), PValue: n.PValue}
+	e.Found = reach < 3
+	e.Why = fmt.Sprintf("a band of the predicted height stands %.1f standard deviations above chance in these %d shots; five need about %.0f", reach, r.Account.Trajectories, e.Value)
+	return e
+}
