@@ -68,9 +68,10 @@ func (r *Interpretation) numberSpread(raw *band.Sides) Explanation {
 			left = (v.Strength - r.Account.Null.Strength) / r.Account.Null.Spread()
 		}
 	}
-	e.Found = e.PValue < certain && mean > 0
-	e.Why = fmt.Sprintf("before normalising the window is correlated by %.2g as a whole, as a spread of %.2g %% would make it; a constant is no band, and projecting the number out instead of rescaling moves the band by %.1f standard deviations",
-		mean, 100*e.Value, left)
+	known := r.Input.Camera.NumberSpread
+	e.Found = e.PValue < certain && mean > 0 && e.Value > math.Max(1.5*known, 0.01) || math.Abs(left) > 2
+	e.Why = fmt.Sprintf("before normalising the window is correlated by %.2g as a whole, as a spread of %.2g %% would make it (%.2g %% are expected); a constant is no band, and projecting the number out instead of rescaling moves the band by %.1f standard deviations",
+		mean, 100*e.Value, 100*known, left)
 	return e
 }
 
@@ -156,7 +157,6 @@ func (r *Interpretation) crossTalk(s *band.Sides) Explanation {
 	var products []float64
 	count := 0
 	third := len(s.Xu) / 3
-	far := s.Xu[len(s.Xu)-third] - s.Xu[third-1]
 	for i := range s.Shots() {
 		row := s.U.RawRowView(i)
 		products = append(products, stat.Mean(row[:third], nil)*stat.Mean(row[len(row)-third:], nil))
@@ -165,63 +165,62 @@ func (r *Interpretation) crossTalk(s *band.Sides) Explanation {
 	mean, sd := stat.MeanStdDev(products, nil)
 	err := sd / math.Sqrt(float64(count))
 	e.Value, e.PValue = mean, twoSided(mean/err)
-	// Neighbouring sound waves are correlated there by −1/(2π n c d²), and the
-	// number's normalisation makes a small constant.
-	allowed := 3 / (2 * math.Pi * r.Input.AtomsPerLength * far * far)
+	// Sound waves are correlated there by −1/(2π n c d²), and the number's
+	// normalisation makes a small constant.
+	apart := (s.Xu[len(s.Xu)-1] - s.Xu[0]) * 2 / 3
+	allowed := 1.5 / (2 * math.Pi * r.Input.AtomsPerLength * apart * apart)
 	e.Found = e.PValue < certain && math.Abs(mean) > 2*allowed
-	e.Why = fmt.Sprintf("the two ends of the upstream window, %.3g ξ apart, are correlated by %.2g ± %.2g, where waves make at most %.1g: what is more comes from the camera or from the normalisation", far, mean, err, allowed)
+	e.Why = fmt.Sprintf("the two ends of the upstream window, %.3g ξ apart, are correlated by %.2g ± %.2g, where waves make about %.1g: what is more comes from the camera or from the normalisation", apart, mean, err, allowed)
 	return e
 }
 
-// heat asks how much of the band is due to phonons that were there already, and
-// whether it is stronger than vacuum and the cloud's temperature make it.
+// heat takes the temperature of the cloud from its own density waves upstream,
+// short ones that the horizon hardly emits: their power is coth(ε/2T) times the
+// vacuum's.
 func (r *Interpretation) heat(s *band.Sides) Explanation {
-	a := r.Account
-	e := Explanation{Name: "phonons already there", Unit: "temperature"}
-	theory := bogoliubov.NewBand(a.Predicted.Upstream, a.Predicted.Downstream, r.Input.AtomsPerLength)
-	theory.SetResponse(r.Input.Camera.Response(r.Rest))
-	w := theory.Over(s.Xu, s.Xd, a.Scattered/2, 1)
-	scatterer, err := bogoliubov.NewScatterer(r.Input.Predicted)
-	if err != nil {
-		e.Why = err.Error()
+	e := Explanation{Name: "phonons already there", Unit: "temperature", PValue: 1}
+	up := r.Account.Predicted.Upstream
+	c := r.Input.Camera
+	var ks []float64
+	for k := 0.4; k <= 1.2; k += 0.2 {
+		if c.Resolution*k < 1.5 {
+			ks = append(ks, k*up.SoundSpeed)
+		}
+	}
+	if len(ks) == 0 {
+		e.Why = "the resolution hides the waves that would tell"
 		return e
 	}
-	rows, err := scatterer.All(w.Frequencies())
-	if err != nil {
-		e.Why = err.Error()
-		return e
-	}
-	height := func(T float64) float64 {
-		pairing := make([]complex128, len(rows))
-		for i, row := range rows {
-			pairing[i] = row.Pairing(T)
+	vacuum, photons := r.vacuum(s.Xu, up.Density, up.SoundSpeed, ks)
+	// Each shot's mean over the waves of its power over the vacuum's.
+	excess := make([]float64, s.Shots())
+	for f, k := range ks {
+		for i, z := range amplitudes(s.Xu, k, s.Shots(), s.U.RawRowView, vacuum[f]) {
+			excess[i] += (square(z) - photons/vacuum[f] - 1) / float64(len(ks))
 		}
-		template := band.Template(s, w.Paired(nil, pairing, 0))
-		var sum float64
-		for _, v := range template.RawMatrix().Data {
-			sum += v * v
-		}
-		return 1 / math.Sqrt(sum) // the norm of the pattern
 	}
-	cold, config := height(0), height(r.Input.Temperature)
-	excess := (a.Null.Strength - 1) / a.Null.Spread()
-	e.PValue = twoSided(math.Max(excess, 0))
-	e.Value = r.Input.Temperature
-	if excess > 0 {
-		// The temperature that would explain the strength.
-		lo, hi := r.Input.Temperature, math.Max(1, 10*r.Input.Temperature)
-		for range 40 {
-			m := (lo + hi) / 2
-			if height(m) < config*a.Null.Strength {
-				lo = m
-			} else {
-				hi = m
-			}
+	mean, sd := stat.MeanStdDev(excess, nil)
+	err := sd / math.Sqrt(float64(s.Shots()))
+	expected := func(T float64) (sum float64) {
+		for _, k := range ks {
+			sum += (bogoliubov.StructureFactor(k, up.SoundSpeed, T)/bogoliubov.StructureFactor(k, up.SoundSpeed, 0) - 1) / float64(len(ks))
 		}
-		e.Value = lo
+		return sum
 	}
-	e.Found = excess > 3.3 || config > 1.3*cold
-	e.Why = fmt.Sprintf("at the cloud's temperature the band is %.2f times as strong as from vacuum alone; it is measured at %.2f ± %.2f of that, which a cloud at the temperature given here would make", config/cold, a.Null.Strength, a.Null.Spread())
+	lo, hi := 0.0, 10.0
+	for range 60 {
+		if m := (lo + hi) / 2; expected(m) < mean {
+			lo = m
+		} else {
+			hi = m
+		}
+	}
+	e.Value = lo
+	beyond := (mean - expected(r.Input.Temperature)) / err
+	e.PValue = twoSided(math.Max(beyond, 0))
+	// Emission itself, the response and the window's ends leave some.
+	e.Found = e.PValue < certain && mean-expected(r.Input.Temperature) > 0.15
+	e.Why = fmt.Sprintf("short waves upstream have %.2f ± %.2f of the vacuum's power, and at the temperature given they would have %.2f: what is more is heat, or a camera that is not the one described", 1+mean, err, 1+expected(r.Input.Temperature))
 	return e
 }
 
@@ -276,13 +275,19 @@ func (r *Interpretation) secondHorizon(p horizon.Pictures) Explanation {
 	up := r.Account.Measured.Upstream
 	current := up.Density * up.Velocity
 	law := r.Input.Law
+	_, _, h := r.Input.Predicted.Ends()
+	// The coupling is that of the predicted flow.
+	sound := func(x, n float64) float64 {
+		expected, _ := r.Input.Predicted.At(x)
+		return r.Input.Predicted.SoundSpeed(x) * law.SoundSpeed(n) / law.SoundSpeed(expected)
+	}
 	run := 0
 	for k, at := range p.X {
-		if at < r.Account.Window.DownNear {
+		if at-h.Position < r.Account.Window.DownNear {
 			continue
 		}
 		n := mean[k] - 3*meanError[k]
-		if n > 0 && current/n < law.SoundSpeed(n) {
+		if n > 0 && current/n < sound(at, n) {
 			if run++; run == 3 {
 				e.Value, e.Found, e.PValue = p.X[k-2], true, distuv.UnitNormal.Survival(3)
 				e.Why = fmt.Sprintf("%.3g ξ behind the step the density is so high that the flow, at the current of the upstream side, is slower than sound again: the region between may run away, which cavity tells", e.Value)

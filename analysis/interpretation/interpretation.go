@@ -47,6 +47,7 @@ type Interpretation struct {
 
 	Account *horizon.Account
 	Search  *band.Search
+	Along   *Along // nil where the picture does not reach far enough
 
 	Systematics  []Variation
 	Explanations []Explanation
@@ -86,6 +87,9 @@ func Interpret(in *Input) (*Interpretation, error) {
 		return nil, err
 	}
 	r.Search = band.Find(sides, in.Settings.Shuffles, in.Settings.Seed)
+	if r.Along, err = r.along(pictures); err != nil {
+		return nil, err
+	}
 	if err := r.vary(); err != nil {
 		return nil, err
 	}

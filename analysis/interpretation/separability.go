@@ -22,19 +22,22 @@ import (
 //	n_u ≤ S_u/S₀ − 1,  n_d2 ≤ S_d/S₀ − 1,
 //	Δ = n_u n_d2 − |⟨b_u b_d2⟩|² ≤ (S_u/S₀ − 1)(S_d/S₀ − 1) − |⟨b_u b_d2⟩|².
 //
+// All three are of one pair of modes: a wave of that frequency on each side, under
+// a taper that ends with the window. A window shorter than a wave's own length
+// mixes frequencies; the inequality holds for the mixture all the same.
+//
 // Where the bound is below zero the partners are entangled whatever the ingoing
 // waves are; where it is not, nothing is said without an independent measurement
 // of those.
 type Separability struct {
-	Omega               []float64
-	Up, Down            []float64 // S/S₀ − 1 of each side, in the window
-	Pairing             []float64 // |⟨b_u b_d2⟩|², likewise
-	Bound, Low, High    []float64 // of Δ, with the central 68 % of the bootstrap
-	Found               bool      // the bound is below zero, with its interval, at two frequencies or more
-	MostSignificant     float64   // standard deviations below zero at the best frequency
-	Assumptions         []Assumption
-	samples             [][]float64
-	resamples, failures int
+	Omega            []float64
+	Up, Down         []float64 // S/S₀ − 1 of each side, in the window
+	Pairing          []float64 // |⟨b_u b_d2⟩|², of the same modes
+	Bound, Low, High []float64 // of Δ, with the central 68 % of the bootstrap
+	Found            bool      // the bound is below zero, with its interval, at two frequencies or more
+	MostSignificant  float64   // standard deviations below zero at the best frequency
+	Assumptions      []Assumption
+	samples          [][]float64
 }
 
 // Assumption is one on which the bound rests, and whether the data support it.
@@ -44,16 +47,17 @@ type Assumption struct {
 	Why  string
 }
 
-// separate works out the bound, or returns nil where there is no coherence
-// spectrum to hold against it.
+// frequencies is at how many frequencies below ω_max the bound is worked out.
+const frequencies = 6
+
+// separate works out the bound.
 func (r *Interpretation) separate(s *band.Sides) *Separability {
-	c := r.Account.Coherence
-	if c == nil {
-		return nil
-	}
 	up, down := r.Account.Predicted.Upstream, r.Account.Predicted.Downstream
-	q := &Separability{Omega: c.Omega}
-	n := len(c.Omega)
+	q := &Separability{}
+	for f := range frequencies {
+		q.Omega = append(q.Omega, math.Min(0.95*r.Account.OmegaMax, 6*r.Account.Scattered)*float64(f+1)/frequencies)
+	}
+	const n = frequencies
 	type side struct {
 		x       []float64
 		rows    func(i int) []float64
@@ -72,44 +76,50 @@ func (r *Interpretation) separate(s *band.Sides) *Separability {
 		}, down.Density, down.SoundSpeed},
 	}
 	shots := s.Shots()
-	// Each shot's power at each frequency over that of the vacuum, through the
-	// same taper, pixels and photons.
-	power := [2][][]float64{}
+	// Each shot's amplitude in each window mode, in units of the vacuum's: through
+	// the same taper and pixels, less the photons.
+	amplitude := [2][][]complex128{}
+	noise := [2][]float64{}
 	for a, d := range sides {
-		vacuum, photons := r.vacuum(d.x, d.density, d.sound, c.Omega, d.k)
-		power[a] = make([][]float64, n)
-		for f, w := range c.Omega {
-			power[a][f] = make([]float64, shots)
-			k := d.k(w)
-			re, im := tapered(d.x, k)
-			for i := range shots {
-				var x, y float64
-				for j, v := range d.rows(i) {
-					x += v * re[j]
-					y += v * im[j]
-				}
-				power[a][f][i] = (x*x+y*y-photons)/vacuum[f] - 1
+		ks := make([]float64, n)
+		for f, w := range q.Omega {
+			ks[f] = d.k(w)
+		}
+		vacuum, photons := r.vacuum(d.x, d.density, d.sound, ks)
+		amplitude[a], noise[a] = make([][]complex128, n), make([]float64, n)
+		for f, k := range ks {
+			if a == 1 {
+				k = -k // the partner's conjugate
 			}
+			amplitude[a][f] = amplitudes(d.x, k, shots, d.rows, vacuum[f])
+			noise[a][f] = photons / vacuum[f]
 		}
 	}
-	pairs := c.Shots()
-	unit := c.Unit()
 	estimate := func(weight []float64) (u, d, g, bound []float64) {
 		u, d, g, bound = make([]float64, n), make([]float64, n), make([]float64, n), make([]float64, n)
 		for f := range n {
-			u[f], d[f] = stat.Mean(power[0][f], weight), stat.Mean(power[1][f], weight)
-			var sum complex128
-			var total float64
-			for i, z := range pairs[f] {
+			var pair complex128
+			var up, down, scatter, total float64
+			for i := range shots {
 				w := 1.0
 				if weight != nil {
 					w = weight[i]
 				}
-				sum += complex(w, 0) * z
+				x, y := amplitude[0][f][i], amplitude[1][f][i]
+				z := x * y
+				up, down = up+w*square(x), down+w*square(y)
+				pair += complex(w, 0) * z
+				scatter += w * square(z)
 				total += w
 			}
-			sum /= complex(total, 0)
-			g[f] = (real(sum)*real(sum) + imag(sum)*imag(sum) - c.Chance(f)) / (unit[f] * unit[f])
+			pair /= complex(total, 0)
+			u[f], d[f] = up/total-noise[0][f]-1, down/total-noise[1][f]-1
+			// Chance adds its variance to a square; a resample has it twice.
+			chance := (scatter/total - square(pair)) / (total - 1)
+			if weight != nil {
+				chance *= 2
+			}
+			g[f] = square(pair) - chance
 			bound[f] = math.Max(u[f], 0)*math.Max(d[f], 0) - g[f]
 		}
 		return u, d, g, bound
@@ -173,6 +183,25 @@ func (r *Interpretation) assumptions() []Assumption {
 	}
 }
 
+func square(z complex128) float64 { return real(z)*real(z) + imag(z)*imag(z) }
+
+// amplitudes returns Σ_x h(x) row(x) exp(−ikx) of each shot over the square root
+// of the vacuum's power.
+func amplitudes(x []float64, k float64, shots int, rows func(i int) []float64, vacuum float64) []complex128 {
+	re, im := tapered(x, k)
+	out := make([]complex128, shots)
+	scale := 1 / math.Sqrt(vacuum)
+	for i := range out {
+		var a, b float64
+		for j, v := range rows(i) {
+			a += v * re[j]
+			b += v * im[j]
+		}
+		out[i] = complex(a*scale, b*scale)
+	}
+	return out
+}
+
 // tapered returns h(x) exp(−ikx) with Hann's window.
 func tapered(x []float64, k float64) (re, im []float64) {
 	re, im = make([]float64, len(x)), make([]float64, len(x))
@@ -184,10 +213,10 @@ func tapered(x []float64, k float64) (re, im []float64) {
 	return re, im
 }
 
-// vacuum returns the mean power at each frequency that the vacuum's own density
+// vacuum returns the mean power at each wave number that the vacuum's own density
 // fluctuations have in the window, and that of the photons, both relative to the
 // squared density.
-func (r *Interpretation) vacuum(x []float64, density, sound float64, omega []float64, k func(float64) float64) (power []float64, photons float64) {
+func (r *Interpretation) vacuum(x []float64, density, sound float64, ks []float64) (power []float64, photons float64) {
 	in := r.Input
 	c := in.Camera
 	atoms := density * in.AtomsPerLength
@@ -200,16 +229,19 @@ func (r *Interpretation) vacuum(x []float64, density, sound float64, omega []flo
 	// ⟨δn δn′⟩/n² = (1/atoms) ∫dk/2π S₀(k) |response|² e^{ik(x−x′)}, to where the
 	// pixels see nothing.
 	top := 30 / c.Pixel
-	if c.Resolution > 0 {
+	switch {
+	case c.Points: // of a grid, which holds no shorter waves
+		top = math.Pi / c.Pixel
+	case c.Resolution > 0:
 		top = math.Min(top, 6/c.Resolution)
 	}
 	step := math.Pi / (4 * math.Abs(x[len(x)-1]-x[0]))
-	power = make([]float64, len(omega))
+	power = make([]float64, len(ks))
 	response := c.Response(0)
 	for q := -top; q < top; q += step {
 		weight := bogoliubov.StructureFactor(q, sound, 0) * response(q, q) * step / (2 * math.Pi * atoms)
-		for f, w := range omega {
-			re, im := tapered(x, k(w)-q)
+		for f, k := range ks {
+			re, im := tapered(x, k-q)
 			var a, b float64
 			for j := range re {
 				a += re[j]

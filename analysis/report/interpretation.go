@@ -75,6 +75,19 @@ func (p *Interpretation) Result() any {
 	o.with(u, "omega_max", a.OmegaMax, Rate)
 	o.with(u, "temperature_low_frequency", a.Scattered, Temperature)
 	o.set("band", run.band())
+	if a := it.Along; a != nil {
+		along := []object{}
+		for _, x := range a.Slices {
+			var w object
+			w.with(u, "from", x.From, Time)
+			w.with(u, "to", x.To, Time)
+			w.set("strength_over_predicted", number(x.Strength))
+			w.set("error", number(x.Error))
+			along = append(along, w)
+		}
+		o.set("along", along)
+		o.with(u, "front", a.Front, Time)
+	}
 	var s object
 	s.set("slope", number(-it.Search.Ratio))
 	s.with(u, "offset", it.Search.Offset, Length)
@@ -269,9 +282,92 @@ func (p *Interpretation) Figures() []struct {
 		{"map", "The correlation map, smoothed a little for the eye. The band is predicted along the dashed line; the analysis uses the window.", r.mapWith(p.It.Input.Camera.Pixel)},
 		{"cut", "The cut across the band, averaged along it, with the fits.", r.cutFigure()},
 		{"coherence", "The coherence of the partners against frequency, through the window, with the thermal fit.", r.coherenceFigure()},
+		{"along", "The band's strength along its length, against the time since the pairs left the horizon: it should hold to the horizon's age and end there.", p.alongFigure()},
 		{"null", "The strength of the band where theory puts it, and what shuffling the downstream halves between shots makes of it.", r.nullFigure()},
 		{"separability", "The bound on n_u n_d2 − |⟨b_u b_d2⟩|²: below zero the partners are entangled.", p.separabilityFigure()},
 	}
+}
+
+func (p *Interpretation) alongFigure() *figure.Page {
+	a, u := p.It.Along, p.Units
+	if a == nil || len(a.Slices) < 2 {
+		return nil
+	}
+	var d figure.Points
+	d.Name = "strength in a slice"
+	for _, s := range a.Slices {
+		d.X, d.Y, d.Error = append(d.X, u.Value((s.From+s.To)/2, Time)), append(d.Y, s.Strength), append(d.Error, s.Error)
+	}
+	f := figure.Chart{Across: "age of the pairs", Unit: u.Axis(Time), Panels: []figure.ChartPanel{{Ordinate: "strength over its prediction", Levels: []float64{0, 1}, Dots: []figure.Points{d}}}}
+	if !math.IsNaN(a.Age) && a.Age < a.Slices[len(a.Slices)-1].To {
+		f.Marks = []figure.Mark{{Name: "age of the horizon", At: u.Value(a.Age, Time)}}
+	}
+	return f.Page()
+}
+
+// Times is a report on several times of a sweep.
+type Times struct {
+	Units Units
+	Times *interpretation.Times
+}
+
+// Result returns the object under "times".
+func (t *Times) Result() any {
+	u := t.Units
+	var o object
+	rows := []object{}
+	for _, m := range t.Times.Moments {
+		var r object
+		r.with(u, "age", m.Age, Time)
+		r.set("strength_over_predicted", number(m.Strength))
+		r.set("strength_error", number(m.StrengthError))
+		r.set("significance", number(m.Significance))
+		r.set("method", m.Method)
+		r.with(u, "temperature", m.Temperature, Temperature)
+		r.with(u, "low", m.Low, Temperature)
+		r.with(u, "high", m.High, Temperature)
+		r.with(u, "front", m.Front, Time)
+		rows = append(rows, r)
+	}
+	o.set("rows", rows)
+	o.with(u, "mean_temperature", t.Times.Mean, Temperature)
+	o.with(u, "mean_temperature_error", t.Times.MeanError, Temperature)
+	o.set("steady_p_value", number(t.Times.PValue))
+	o.set("front_growth", number(t.Times.Growth))
+	return o
+}
+
+// JSON returns the result indented.
+func (t *Times) JSON() ([]byte, error) {
+	b, err := json.MarshalIndent(t.Result(), "", "  ")
+	return append(b, '\n'), err
+}
+
+// Summary prints the table.
+func (t *Times) Summary(w io.Writer) error {
+	u := t.Units
+	var b strings.Builder
+	tw := tabwriter.NewWriter(&b, 0, 0, 2, ' ', 0)
+	fmt.Fprintf(tw, "age\tstrength\tabove chance\ttemperature\t68 %% interval\tby\tthe band ends at\n")
+	for _, m := range t.Times.Moments {
+		method, temperature, front := m.Method, "none trusted", "not seen"
+		if method != "" {
+			temperature = u.say(m.Temperature, Temperature)
+		}
+		if !math.IsNaN(m.Front) {
+			front = u.say(m.Front, Time)
+		}
+		fmt.Fprintf(tw, "%s\t%.2f ± %.2f\t%.1f\t%s\t%s\t%s\t%s\n", u.say(m.Age, Time), m.Strength, m.StrengthError, m.Significance, temperature, u.interval(m.Low, m.High, Temperature), method, front)
+	}
+	tw.Flush()
+	if !math.IsNaN(t.Times.PValue) {
+		fmt.Fprintf(&b, "\na steady temperature of %s ± %s would scatter as much with probability %.2g\n", u.say(t.Times.Mean, Temperature), u.say(t.Times.MeanError, Temperature), t.Times.PValue)
+	}
+	if !math.IsNaN(t.Times.Growth) {
+		fmt.Fprintf(&b, "the end of the band moves on by %.2f of the age, where a horizon's own band has 1\n", t.Times.Growth)
+	}
+	_, err := io.WriteString(w, b.String())
+	return err
 }
 
 func (p *Interpretation) separabilityFigure() *figure.Page {

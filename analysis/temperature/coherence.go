@@ -202,18 +202,3 @@ func (c *Coherence) Read(transform []complex128) []float64 {
 	}
 	return v
 }
-
-// Shots returns each shot's part in the transform, [frequency][shot].
-func (c *Coherence) Shots() [][]complex128 { return c.shot }
-
-// Unit returns the size of the transform of a band of pairing 1.
-func (c *Coherence) Unit() []float64 {
-	u := make([]float64, len(c.unit))
-	for f, z := range c.unit {
-		u[f] = cmplx.Abs(z)
-	}
-	return u
-}
-
-// Chance returns what chance alone adds to the squared transform at frequency f.
-func (c *Coherence) Chance(f int) float64 { return c.chance[f] }

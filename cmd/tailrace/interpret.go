@@ -1,13 +1,16 @@
 package main
 
 import (
+	"cmp"
 	"crypto/sha256"
 	"encoding/hex"
+	"errors"
 	"fmt"
 	"io"
 	"math"
 	"os"
 	"path/filepath"
+	"slices"
 	"strings"
 
 	"github.com/spf13/cobra"
@@ -24,14 +27,14 @@ import (
 
 type interpretOptions struct {
 	config, folder, normalise string
-	asJSON, points            bool
+	asJSON, points, several   bool
 	resamples, shuffles       int
 }
 
 func interpretCommand() *cobra.Command {
 	o := interpretOptions{}
 	c := &cobra.Command{
-		Use:   "interpret SHOTS",
+		Use:   "interpret SHOTS...",
 		Short: "measured or simulated shots: map, band, temperature, verdicts",
 		Long: `interpret reads shots, an archive of numpy (.npz) or a text file (.csv), lays them
 on top of each other by the step, and says what they show: whether there is a
@@ -40,14 +43,15 @@ explanations there are, whether the partners are entangled. It writes report.htm
 and result.json into a folder of its own.
 
 The config says what is known of the experiment: atoms, trap, step and camera. A
-run's folder has its own.`,
+run's folder has its own. Several files are several times of one sweep: each is
+interpreted, and then whether temperature and band grow with time as they should.`,
 		Args: func(_ *cobra.Command, args []string) error {
-			if len(args) != 1 {
-				return &usageError{fmt.Errorf("one file of shots or the folder of a run is expected, %d were given", len(args))}
+			if len(args) == 0 {
+				return &usageError{errors.New("a file of shots or the folder of a run is expected")}
 			}
 			return nil
 		},
-		RunE: func(_ *cobra.Command, args []string) error { return o.run(args[0]) },
+		RunE: func(_ *cobra.Command, args []string) error { return o.run(args) },
 	}
 	c.Flags().StringVar(&o.config, "config", "", "the scenario of the experiment: an example's name or a file")
 	c.Flags().StringVar(&o.folder, "folder", "", "where report.html, result.json and figures go (default: the shots' name with -interpreted)")
@@ -59,40 +63,72 @@ run's folder has its own.`,
 	return c
 }
 
-func (o *interpretOptions) run(path string) error {
-	normalisation, known := map[string]shots.Normalisation{"rescale": shots.Rescale, "project": shots.Project, "none": shots.Raw}[o.normalise]
-	if !known {
+func (o *interpretOptions) run(paths []string) error {
+	normalisation, sound := map[string]shots.Normalisation{"rescale": shots.Rescale, "project": shots.Project, "none": shots.Raw}[o.normalise]
+	if !sound {
 		return &usageError{fmt.Errorf("--normalise = %q: rescale, project or none is expected", o.normalise)}
 	}
 	if o.resamples < 20 || o.shuffles < 100 || o.resamples > 100000 || o.shuffles > 100000 {
 		return &usageError{fmt.Errorf("--resamples %d, --shuffles %d: at least 20 and 100, at most 100000 of each", o.resamples, o.shuffles)}
 	}
+	if len(paths) > 1 && o.folder != "" {
+		return &usageError{errors.New("--folder is for one file of shots; several have a folder each, by their names")}
+	}
+	o.several = len(paths) > 1
+	var all []*report.Interpretation
+	for _, path := range paths {
+		r, err := o.one(path, normalisation)
+		if err != nil {
+			return err
+		}
+		all = append(all, r)
+		if len(paths) > 1 && !o.asJSON {
+			fmt.Printf("%s: %s\n\n", path, r.Verdict())
+		}
+	}
+	if len(all) == 1 {
+		return nil
+	}
+	slices.SortStableFunc(all, func(a, b *report.Interpretation) int { return cmp.Compare(a.It.Input.Age, b.It.Input.Age) })
+	var its []*interpretation.Interpretation
+	for _, r := range all {
+		its = append(its, r.It)
+	}
+	times := &report.Times{Units: all[0].Units, Times: interpretation.Together(its)}
+	if o.asJSON {
+		return printJSON(times.JSON())
+	}
+	return times.Summary(os.Stdout)
+}
+
+// one interprets one file and writes its folder.
+func (o *interpretOptions) one(path string, normalisation shots.Normalisation) (*report.Interpretation, error) {
 	config, points, err := o.scenario(path)
 	if err != nil {
-		return err
+		return nil, err
 	}
-	known2, err := config.Stationary()
+	known, err := config.Stationary()
 	if err != nil {
-		return err
+		return nil, err
 	}
-	if known2.PerXi == 0 {
-		return config.Fault("cloud.atoms", "nothing", "the number of atoms", "the height of the band depends on it")
+	if known.PerXi == 0 {
+		return nil, config.Fault("cloud.atoms", "nothing", "the number of atoms", "the height of the band depends on it")
 	}
 	units := shots.Condensate
-	if known2.InLab {
+	if known.InLab {
 		units = shots.Lab
 	}
 	set, err := shots.Read(path, units)
 	if err != nil {
-		return err
+		return nil, err
 	}
 	sum, err := checksum(set.Path)
 	if err != nil {
-		return err
+		return nil, err
 	}
-	cam, err := cameraOf(known2, set, points)
+	cam, err := cameraOf(known, set, points)
 	if err != nil {
-		return err
+		return nil, err
 	}
 	out := o.folder
 	if out == "" {
@@ -101,48 +137,53 @@ func (o *interpretOptions) run(path string) error {
 	}
 	made, err := folder.Create(out)
 	if err != nil {
-		return err
+		return nil, err
 	}
 	settings := horizon.DefaultSettings
 	settings.Resamples, settings.Shuffles = o.resamples, o.shuffles
 	it, err := interpretation.Interpret(&interpretation.Input{
-		Set: set, Length: known2.Length(), Density: known2.Density(), Predicted: known2.Profile, Law: known2.Law,
-		AtomsPerLength: known2.PerXi, Temperature: known2.Temperature, Camera: cam, Age: known2.Age(set.Time),
+		Set: set, Length: known.Length(), Density: known.Density(), Predicted: known.Profile, Law: known.Law,
+		AtomsPerLength: known.PerXi, Temperature: known.Temperature, Camera: cam, Age: known.Age(set.Time),
 		Settings: settings, Normalisation: normalisation})
 	if err != nil {
-		made.Abandon()
-		return fmt.Errorf("%s: %w", path, err)
+		return nil, errors.Join(fmt.Errorf("%s: %w", path, err), made.Abandon())
 	}
-	r := &report.Interpretation{Title: config.Title, Config: config.Source, Version: version, Source: set.Path, Checksum: sum, Units: unitsOf(known2), It: it}
+	r := &report.Interpretation{Title: config.Title, Config: config.Source, Version: version, Source: set.Path, Checksum: sum, Units: unitsOf(known), It: it}
+	result, err := o.write(made, r)
+	switch {
+	case err != nil || o.several:
+		return r, err
+	case o.asJSON:
+		_, err = os.Stdout.Write(result)
+		return r, err
+	}
+	if err := r.Summary(os.Stdout); err != nil {
+		return r, err
+	}
+	fmt.Printf("\nreport.html, result.json and figures are in %s\n", made.Path)
+	return r, nil
+}
+
+// write writes the folder of an interpretation.
+func (o *interpretOptions) write(made *folder.Folder, r *report.Interpretation) ([]byte, error) {
 	for _, f := range r.Figures() {
 		if f.Page != nil {
 			if err := f.Page.Save(made.File("figures"), f.Name); err != nil {
-				return err
+				return nil, err
 			}
 		}
 	}
-	if err := r.Units.WriteMap(made.Path, "map.npz", it.Account.Map); err != nil {
-		return err
+	if err := r.Units.WriteMap(made.Path, "map.npz", r.It.Account.Map); err != nil {
+		return nil, err
 	}
 	result, err := r.JSON()
 	if err != nil {
-		return err
+		return nil, err
 	}
 	if err := made.Write("result.json", result); err != nil {
-		return err
+		return nil, err
 	}
-	if err := whole.WriteFile(made.File("report.html"), r.HTML); err != nil {
-		return err
-	}
-	if o.asJSON {
-		_, err = os.Stdout.Write(result)
-		return err
-	}
-	if err := r.Summary(os.Stdout); err != nil {
-		return err
-	}
-	fmt.Printf("\nreport.html, result.json and figures are in %s\n", made.Path)
-	return nil
+	return result, whole.WriteFile(made.File("report.html"), r.HTML)
 }
 
 // scenario finds the config: the one given, or a run's own.
