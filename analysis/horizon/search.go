@@ -22,16 +22,23 @@ type expected struct {
 	background []float64 // and of what lies under them
 }
 
-// Memory keeps what theory says of one window between accounts of campaigns of
-// one flow: it takes longer to work out than all the rest. It may be used by
-// several goroutines.
+// Memory keeps what theory says of one flow between accounts of its campaigns,
+// for it takes longer to work out than all the rest. All of them must have the
+// same response, unless SharedWith makes another. It may be used by several
+// goroutines.
 type Memory struct {
-	mu      sync.Mutex
-	xu, xd  []float64
-	bins    band.Bins
-	expect  *expected
-	family  *bogoliubov.Family
-	profile *bogoliubov.Profile
+	mu       sync.Mutex
+	xu, xd   []float64
+	expect   *expected
+	families []*bogoliubov.Family
+}
+
+// SharedWith returns a memory for pictures of another response, which knows the
+// flow already.
+func (m *Memory) SharedWith() *Memory {
+	m.mu.Lock()
+	defer m.mu.Unlock()
+	return &Memory{families: m.families}
 }
 
 // fits reports whether what is remembered is of this window, and forgets it
@@ -40,7 +47,7 @@ func (m *Memory) fits(s *band.Sides) bool {
 	if slices.Equal(m.xu, s.Xu) && slices.Equal(m.xd, s.Xd) {
 		return true
 	}
-	m.xu, m.xd, m.expect, m.family = s.Xu, s.Xd, nil, nil
+	m.xu, m.xd, m.expect = s.Xu, s.Xd, nil
 	return false
 }
 
@@ -61,20 +68,26 @@ func (a *Account) expected(sides *band.Sides, in Input, span float64) (*expected
 	return e, err
 }
 
-// family is that of the template fit, with a memory.
+// family is that of the template fit, with a memory: it depends on the flow and
+// the frequencies alone.
 func (a *Account) family(sides *band.Sides, e *expected, in Input) (*bogoliubov.Family, *bogoliubov.Profile, error) {
-	if in.Memory != nil {
-		in.Memory.mu.Lock()
-		defer in.Memory.mu.Unlock()
-		if in.Memory.fits(sides) && in.Memory.family != nil && in.Memory.bins == a.Cut.Bins {
-			return in.Memory.family, in.Memory.profile, nil
+	profile := temperature.TemplateProfile(a.Cut, sides, a.Predicted.Geometry(), e.theory, a.Predicted.Horizon)
+	if in.Memory == nil {
+		f, err := temperature.NewFamily(a.profile, profile.Frequencies(), in.Problem.Temperature)
+		return f, profile, err
+	}
+	in.Memory.mu.Lock()
+	defer in.Memory.mu.Unlock()
+	for _, f := range in.Memory.families {
+		if slices.Equal(f.Omega, profile.Frequencies()) {
+			return f, profile, nil
 		}
 	}
-	f, p, err := temperature.NewFamily(a.Cut, sides, a.Predicted.Geometry(), e.theory, a.profile, in.Problem.Temperature)
-	if err == nil && in.Memory != nil {
-		in.Memory.family, in.Memory.profile, in.Memory.bins = f, p, a.Cut.Bins
+	f, err := temperature.NewFamily(a.profile, profile.Frequencies(), in.Problem.Temperature)
+	if err == nil {
+		in.Memory.families = append(in.Memory.families, f)
 	}
-	return f, p, err
+	return f, profile, err
 }
 
 // expect puts the prediction together. A delay up to span will be asked for.

@@ -49,6 +49,7 @@ type Interpretation struct {
 	Search  *band.Search
 	Along   *Along // nil where the picture does not reach far enough
 
+	memory       *horizon.Memory
 	Systematics  []Variation
 	Explanations []Explanation
 	Separability *Separability
@@ -77,7 +78,7 @@ func Interpret(in *Input) (*Interpretation, error) {
 	height := func(f horizon.Flow) float64 { return math.Sqrt(f.Upstream.Density * f.Downstream.Density) }
 	flowInput.Settings.HeightError = math.Hypot(math.Abs(height(first.Measured)/height(first.Predicted)-1),
 		math.Hypot(first.DensityError[0]/first.Measured.Upstream.Density, first.DensityError[1]/first.Measured.Downstream.Density)/2)
-	flowInput.Memory = trial.Memory
+	flowInput.Memory, r.memory = trial.Memory, trial.Memory
 	if r.Account, err = horizon.Interpret(flowInput, pictures); err != nil {
 		return nil, err
 	}
@@ -102,7 +103,8 @@ func Interpret(in *Input) (*Interpretation, error) {
 
 // align lays the shots on top of each other.
 func (r *Interpretation) align(n shots.Normalisation) (horizon.Pictures, error) {
-	a, err := r.Input.Set.Align(r.Rejected, n, r.Input.Density)
+	low, high := r.view()
+	a, err := r.Input.Set.Align(r.Rejected, n, r.Input.Density, low*r.Input.Length, high*r.Input.Length)
 	if err != nil {
 		return horizon.Pictures{}, err
 	}
@@ -116,6 +118,17 @@ func (r *Interpretation) align(n shots.Normalisation) (horizon.Pictures, error) 
 	c := r.Input.Camera
 	p.Granularity, p.Overlap = c.Granularity(r.Input.AtomsPerLength)
 	return p, nil
+}
+
+// view is the part of the picture that is looked at: some more than the band can
+// have reached, and all of it (0, 0) where that is not known.
+func (r *Interpretation) view() (low, high float64) {
+	up, down, _ := r.Input.Predicted.Ends()
+	reach := 1.4*r.Input.Age + 40
+	if math.IsNaN(reach) {
+		return 0, 0
+	}
+	return -reach * (up.SoundSpeed - up.Velocity) * 1.5, reach * (down.Velocity - down.SoundSpeed)
 }
 
 // flowInput is what horizon.Interpret needs.
@@ -194,6 +207,7 @@ func (r *Interpretation) vary() error {
 		}
 		h := r.flowInput(c)
 		h.Settings.Resamples, h.Settings.Shuffles = 0, 0
+		h.Memory = r.memory.SharedWith()
 		if v.change != nil {
 			v.change(&h)
 		}

@@ -232,8 +232,10 @@ type Aligned struct {
 // all pixels that every shot has, and leaves the rejected ones out. Whole pixels
 // keep the noise of each pixel its own, which interpolation would not; what is
 // left, up to half a pixel, is in Rest and in the response of pictures. A missing
-// pixel takes the mean over the other shots. Densities are divided by unit.
-func (s *Set) Align(rejected []Rejection, n Normalisation, unit float64) (*Aligned, error) {
+// pixel takes the mean over the other shots. Densities are divided by unit. Pixels
+// outside low to high from the step are not kept, though they count for the
+// number; both 0 keep all.
+func (s *Set) Align(rejected []Rejection, n Normalisation, unit, low, high float64) (*Aligned, error) {
 	gone := map[int]bool{}
 	for _, r := range rejected {
 		gone[r.Shot] = true
@@ -262,13 +264,26 @@ func (s *Set) Align(rejected []Rejection, n Normalisation, unit float64) (*Align
 	// The part of the rest that all share is known.
 	rest /= float64(len(a.Index))
 	a.Rest = math.Sqrt(math.Max(rest2/float64(len(a.Index))-rest*rest, 0)) * s.Pixel
+	all := [2]int{left, right}
+	if low < high {
+		left, right = min(left, int(math.Ceil(-low/s.Pixel))), min(right, int(math.Ceil(high/s.Pixel)))
+		if left+right < 16 {
+			return nil, &Error{s.Path, "", fmt.Sprintf("%d pixels are between %.4g and %.4g from the step", left+right+1, low, high), "at least 17 are needed"}
+		}
+	}
 	for k := -left; k <= right; k++ {
 		a.X = append(a.X, (float64(k)-rest)*s.Pixel)
 	}
 	pixels := len(a.X)
 	a.Shots = moments.Shots{Pixels: pixels, Data: make([]float32, len(a.Index)*pixels)}
 	sum, count := make([]float64, pixels), make([]float64, pixels)
+	number := make([]float64, len(a.Index))
 	for i, shot := range a.Index {
+		for _, v := range s.Shot(shot)[at[i]-all[0] : at[i]+all[1]+1] {
+			if !math.IsNaN(v) {
+				number[i] += v
+			}
+		}
 		for k, v := range s.Shot(shot)[at[i]-left : at[i]+right+1] {
 			if !math.IsNaN(v) {
 				sum[k] += v / unit
@@ -283,23 +298,20 @@ func (s *Set) Align(rejected []Rejection, n Normalisation, unit float64) (*Align
 			a.Shots.Data[i] = float32(sum[k] / math.Max(count[k], 1))
 		}
 	}
-	a.normalise(n)
+	a.normalise(n, number)
 	return a, nil
 }
 
-// normalise deals with the spread of the number.
-func (a *Aligned) normalise(n Normalisation) {
+// normalise deals with the spread of the number, which is that of all pixels
+// that every shot has.
+func (a *Aligned) normalise(n Normalisation, number []float64) {
 	if n == Raw {
 		return
 	}
 	count, pixels := a.Shots.Count(), a.Shots.Pixels
-	number := make([]float64, count)
 	var mean float64
-	for i := range number {
-		for _, v := range a.Shots.Shot(i) {
-			number[i] += float64(v)
-		}
-		mean += number[i] / float64(count)
+	for _, x := range number {
+		mean += x / float64(count)
 	}
 	if n == Rescale {
 		for i := range number {

@@ -78,7 +78,7 @@ func TestAlign(t *testing.T) {
 		}
 	}
 	for _, n := range []Normalisation{Raw, Rescale, Project} {
-		a, err := s.Align(nil, n, 3e7)
+		a, err := s.Align(nil, n, 3e7, 0, 0)
 		if err != nil {
 			t.Fatal(err)
 		}
@@ -101,14 +101,14 @@ func TestAlign(t *testing.T) {
 			t.Errorf("%v: shots scatter by %.2g", n, worst)
 		}
 	}
-	if _, err := s.Align(make([]Rejection, 0), Raw, 1); err != nil {
+	if _, err := s.Align(make([]Rejection, 0), Raw, 1, 0, 0); err != nil {
 		t.Error(err)
 	}
 	var all []Rejection
 	for i := range 98 {
 		all = append(all, Rejection{Shot: i})
 	}
-	if _, err := s.Align(all, Raw, 1); err == nil {
+	if _, err := s.Align(all, Raw, 1, 0, 0); err == nil {
 		t.Error("two shots are aligned")
 	}
 }

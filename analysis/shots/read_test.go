@@ -261,7 +261,7 @@ func BenchmarkRead(b *testing.B) {
 		if err != nil {
 			b.Fatal(err)
 		}
-		if _, err := got.Align(got.Odd(), Rescale, 3e7); err != nil {
+		if _, err := got.Align(got.Odd(), Rescale, 3e7, 0, 0); err != nil {
 			b.Fatal(err)
 		}
 	}

@@ -30,18 +30,21 @@ const (
 	factors             = 15
 )
 
-// NewFamily returns the family of the flow p for fits of the cut c of s, made
-// along geometry g, of a cloud at temperature cloud.
-func NewFamily(c *band.Cut, s *band.Sides, g band.Geometry, theory *bogoliubov.Band, p flow.Profile, cloud float64) (*bogoliubov.Family, *bogoliubov.Profile, error) {
-	_, _, h := p.Ends()
+// TemplateProfile returns the band over the bins of the cut c of s, made along
+// geometry g, for the family of a flow with the given horizon.
+func TemplateProfile(c *band.Cut, s *band.Sides, g band.Geometry, theory *bogoliubov.Band, h flow.Horizon) *bogoliubov.Profile {
 	span := math.Max(math.Abs(c.S[0]), math.Abs(c.S[len(c.S)-1]))
-	profile := theory.Over(s.Xu, s.Xd, h.Temperature/smoothest, span).Profile(len(c.S), groups(c, s, g))
+	return theory.Over(s.Xu, s.Xd, h.Temperature/smoothest, span).Profile(len(c.S), groups(c, s, g))
+}
+
+// NewFamily returns the family of the flow p, at the frequencies of a profile,
+// for a cloud at temperature cloud.
+func NewFamily(p flow.Profile, omega []float64, cloud float64) (*bogoliubov.Family, error) {
 	at := make([]float64, factors)
 	for i := range at {
 		at[i] = sharpest * math.Pow(smoothest/sharpest, float64(i)/(factors-1))
 	}
-	family, err := bogoliubov.NewFamily(p, profile.Frequencies(), at, cloud)
-	return family, profile, err
+	return bogoliubov.NewFamily(p, omega, at, cloud)
 }
 
 // FitTemplate fits the family to the cut and finds the interval as how says.

@@ -180,7 +180,15 @@ func (b *Band) Over(x, xp []float64, coldest, longest float64) *Window {
 	for _, p := range xp {
 		reachXp = math.Max(reachXp, math.Abs(p))
 	}
-	n := b.points(b.phase(reachX, reachXp, longest), coldest)
+	// Few sizes, so that windows that differ little have the same frequencies.
+	n := bandShortest
+	for need := b.points(b.phase(reachX, reachXp, longest), coldest); n < need; {
+		if n&(n-1) == 0 {
+			n += n / 2
+		} else {
+			n += n / 3
+		}
+	}
 	rule := b.makeRule(n)
 	return &Window{
 		rule: &rule,
