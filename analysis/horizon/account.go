@@ -41,8 +41,11 @@ type Settings struct {
 	Span      float64 // half the width of the cut, in units of 1/κ
 	Resamples int     // bootstrap
 	Block     int     // shots drawn together in it, 0 for 1
-	Shuffles  int     // null
-	Seed      uint64
+	// TemplateOnly leaves out the band's line and all thermometers but the
+	// template: what many virtual campaigns need.
+	TemplateOnly bool
+	Shuffles     int // null
+	Seed         uint64
 	// HeightError is the relative standard error of the predicted height of the
 	// band (temperature.Sampling).
 	HeightError float64

@@ -52,8 +52,10 @@ func (c *campaigns) with(perXi float64) *campaigns {
 	return &campaigns{in, &m, c.x}
 }
 
-// aligned lays shots on top of each other by whole pixels and rescales each to
-// the mean number.
+// aligned lays shots on top of each other by whole pixels, keeps those from lo to
+// hi and rescales each shot to the mean number in the whole picture. That must be
+// much longer than the window: number that comes and goes in it by itself is
+// taken for spread, and the band with it.
 func aligned(v *camera.Virtual, s *camera.Shots, lo, hi float64) Pictures {
 	c := v.Camera
 	first, last := int(math.Ceil(lo/c.Pixel)), int(math.Floor(hi/c.Pixel))
@@ -62,23 +64,20 @@ func aligned(v *camera.Virtual, s *camera.Shots, lo, hi float64) Pictures {
 		p.X = append(p.X, float64(i)*c.Pixel)
 	}
 	p.Shots = moments.Shots{Pixels: len(p.X)}
-	for i := range s.Count() {
-		step := int(math.Round(s.StepPosition[i] / c.Pixel))
-		p.Shots.Data = append(p.Shots.Data, s.Shot(i)[step+first:step+last+1]...)
-	}
+	number := make([]float64, s.Count())
 	var total float64
-	for _, x := range p.Shots.Data {
-		total += float64(x)
+	for i := range s.Count() {
+		for _, x := range s.Shot(i) {
+			number[i] += float64(x)
+		}
+		total += number[i] / float64(s.Count())
+		step := int(math.Round(s.StepPosition[i] / c.Pixel))
+		for _, x := range s.Shot(i)[step+first : step+last+1] {
+			p.Shots.Data = append(p.Shots.Data, x*float32(1/number[i]))
+		}
 	}
-	total /= float64(p.Shots.Count())
-	for i := range p.Shots.Count() {
-		row, sum := p.Shots.Shot(i), 0.0
-		for _, x := range row {
-			sum += float64(x)
-		}
-		for k := range row {
-			row[k] *= float32(total / sum)
-		}
+	for i := range p.Shots.Data {
+		p.Shots.Data[i] *= float32(total)
 	}
 	return p
 }
@@ -104,13 +103,13 @@ func TestThermometerIsHonest(t *testing.T) {
 		for _, resolution := range []float64{0.3, 0.6, 1} {
 			for _, spread := range []float64{0, 0.05} {
 				cam := camera.Camera{Pixel: 0.5, Resolution: resolution, PhotonsPerAtom: 50, NumberSpread: spread, Jitter: 0.3}
-				v, err := camera.NewVirtual(c.moments, c.x, f.perXi, cam, -26, 26, camera.Everything)
+				v, err := camera.NewVirtual(c.moments, c.x, f.perXi, cam, -70, 70, camera.Everything)
 				if err != nil {
 					t.Fatal(err)
 				}
 				in := c.in
 				in.Window, in.Response, in.Memory = near16, cam.Response(0.5/math.Sqrt(12)), new(Memory)
-				in.Settings.Resamples, in.Settings.Shuffles = 100, 100
+				in.Settings.Resamples, in.Settings.Shuffles, in.Settings.TemplateOnly = 100, 100, true
 				var values, sizes []float64
 				var truth float64
 				for range each {
@@ -153,13 +152,13 @@ func TestFalseAlarms(t *testing.T) {
 	long(t)
 	c := exactCampaigns(t, ring(t, 1, 90, 1, 768, 384)).with(30)
 	cam := camera.Camera{Pixel: 0.5, Resolution: 0.5, PhotonsPerAtom: 50, NumberSpread: 0.05, Jitter: 0.3}
-	v, err := camera.NewVirtual(c.moments, c.x, 30, cam, -26, 26, camera.Uncorrelated)
+	v, err := camera.NewVirtual(c.moments, c.x, 30, cam, -60, 60, camera.Uncorrelated)
 	if err != nil {
 		t.Fatal(err)
 	}
 	in := c.in
 	in.Window, in.Response, in.Memory = near16, cam.Response(0.5/math.Sqrt(12)), new(Memory)
-	in.Settings.Resamples, in.Settings.Shuffles = 0, 200
+	in.Settings.Resamples, in.Settings.Shuffles, in.Settings.TemplateOnly = 0, 200, true
 	const campaigns = 300
 	alarms := 0
 	var z []float64

@@ -47,9 +47,37 @@ func (p Pictures) Mean() (mean, err []float64) {
 // *band.ErrWindow, *bogoliubov.NoHorizonError and those of fits that cannot be
 // set up; a fit that fails is a warning.
 func Interpret(in Input, p Pictures) (*Account, error) {
+	a, x, err := measured(in, p)
+	if err != nil {
+		return nil, err
+	}
+	mean, _ := p.Mean()
+	sides, err := band.NewSides(p.Shots, x, mean, a.Window)
+	if err != nil {
+		return nil, err
+	}
+	a.Map = correlation.Measured(p.Shots, x, mean, p.Granularity, p.Overlap)
+	return a, a.read(sides, in)
+}
+
+// HeightError returns how far the density of the windows is from the predicted
+// one, with the error of its mean: the relative standard error of the band's
+// predicted height.
+func HeightError(in Input, p Pictures) (float64, error) {
+	a, _, err := measured(in, p)
+	if err != nil {
+		return 0, err
+	}
+	height := func(f Flow) float64 { return math.Sqrt(f.Upstream.Density * f.Downstream.Density) }
+	return math.Hypot(math.Abs(height(a.Measured)/height(a.Predicted)-1),
+		math.Hypot(a.DensityError[0]/a.Measured.Upstream.Density, a.DensityError[1]/a.Measured.Downstream.Density)/2), nil
+}
+
+// measured is the part of an account that needs no correlation.
+func measured(in Input, p Pictures) (*Account, []float64, error) {
 	a := &Account{Time: in.Time, Trajectories: p.Shots.Count()}
 	if err := a.predict(in); err != nil {
-		return nil, err
+		return nil, nil, err
 	}
 	a.OmegaMax = a.scatterer.MaxFrequency()
 	a.SechHeight = bogoliubov.SechAmplitude(a.Predicted.Horizon.SurfaceGravity, a.Predicted.Upstream, a.Predicted.Downstream, in.Problem.AtomsPerLength)
@@ -62,13 +90,11 @@ func Interpret(in Input, p Pictures) (*Account, error) {
 	}
 	a.fit(x)
 	mean, meanError := p.Mean()
-	sides, err := band.NewSides(p.Shots, x, mean, a.Window)
-	if err != nil {
-		return nil, err
+	if err := a.Window.Check(x, mean); err != nil {
+		return nil, nil, err
 	}
-	a.Map = correlation.Measured(p.Shots, x, mean, p.Granularity, p.Overlap)
 	a.measureFlow(in, x, mean, meanError)
-	return a, a.read(sides, in)
+	return a, x, nil
 }
 
 // fit cuts the window down to the picture.

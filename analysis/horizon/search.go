@@ -115,8 +115,9 @@ func (a *Account) read(sides *band.Sides, in Input) error {
 		return err
 	}
 	a.findStrength(sides, e, s)
-	a.findLine(sides, e, kappa, s)
-
+	if !s.TemplateOnly {
+		a.findLine(sides, e, kappa, s)
+	}
 	a.Cut = band.NewCut(sides, g, band.NewBins(g, sides.Xu, sides.Xd, span))
 	a.Cut.Block = s.Block
 	a.PredictedCut = a.Cut.Project(e.band)
@@ -129,6 +130,22 @@ func (a *Account) read(sides *band.Sides, in Input) error {
 		how.Resamples = 0
 	}
 	a.Bias = map[string]float64{}
+	if !s.TemplateOnly {
+		if err := a.readSimply(sides, e, in, kappa, how); err != nil {
+			return err
+		}
+	}
+	if err := a.fitTemplate(sides, e, under, in, how); err != nil {
+		return err
+	}
+	a.judge(in)
+	return nil
+}
+
+// readSimply takes the temperatures that need no family of flows, and what each
+// makes of the predicted band.
+func (a *Account) readSimply(sides *band.Sides, e *expected, in Input, kappa float64, how temperature.Sampling) (err error) {
+	s, g := in.Settings, a.Predicted.Geometry()
 	ideal := a.Cut.With(a.PredictedCut)
 
 	if a.Width, err = temperature.FitWidth(a.Cut, kappa, how.Resamples, s.Seed); err != nil {
@@ -148,10 +165,6 @@ func (a *Account) read(sides *band.Sides, in Input) error {
 	} else if err := a.expectCoherence(in); err != nil {
 		return err
 	}
-	if err := a.fitTemplate(sides, e, under, in, how); err != nil {
-		return err
-	}
-	a.judge(in)
 	return nil
 }
 

@@ -58,28 +58,8 @@ type Interpretation struct {
 // Interpret goes the whole way. Its errors are those of aligning and of
 // horizon.Interpret: a window that holds too few pixels.
 func Interpret(in *Input) (*Interpretation, error) {
-	r := &Interpretation{Input: in, Rejected: in.Set.Odd(), Drifts: in.Set.Drifts()}
-	r.Block = shots.BlockLength(r.Drifts, in.Set.Count)
-	in.Settings.Block = r.Block
-	pictures, err := r.align(in.Normalisation)
+	r, pictures, err := read(in, new(horizon.Memory))
 	if err != nil {
-		return nil, err
-	}
-	// How far the density is from the predicted one is how far the height of
-	// the prediction can be trusted.
-	flowInput := r.flowInput(in.Camera)
-	trial := flowInput
-	trial.Settings.Resamples, trial.Settings.Shuffles = 0, 0
-	trial.Memory = new(horizon.Memory)
-	first, err := horizon.Interpret(trial, pictures)
-	if err != nil {
-		return nil, err
-	}
-	height := func(f horizon.Flow) float64 { return math.Sqrt(f.Upstream.Density * f.Downstream.Density) }
-	flowInput.Settings.HeightError = math.Hypot(math.Abs(height(first.Measured)/height(first.Predicted)-1),
-		math.Hypot(first.DensityError[0]/first.Measured.Upstream.Density, first.DensityError[1]/first.Measured.Downstream.Density)/2)
-	flowInput.Memory, r.memory = trial.Memory, trial.Memory
-	if r.Account, err = horizon.Interpret(flowInput, pictures); err != nil {
 		return nil, err
 	}
 	in.Window = r.Account.Window
@@ -99,6 +79,37 @@ func Interpret(in *Input) (*Interpretation, error) {
 	}
 	r.Separability = r.separate(sides)
 	return r, nil
+}
+
+// Account is the first part of Interpret alone: shots rejected and aligned, the
+// band and its temperatures. Memory serves all campaigns of one flow and camera.
+func Account(in *Input, memory *horizon.Memory) (*horizon.Account, error) {
+	r, _, err := read(in, memory)
+	if err != nil {
+		return nil, err
+	}
+	return r.Account, nil
+}
+
+// read draws up the account.
+func read(in *Input, memory *horizon.Memory) (*Interpretation, horizon.Pictures, error) {
+	r := &Interpretation{Input: in, Rejected: in.Set.Odd(), Drifts: in.Set.Drifts(), memory: memory}
+	r.Block = shots.BlockLength(r.Drifts, in.Set.Count)
+	in.Settings.Block = r.Block
+	pictures, err := r.align(in.Normalisation)
+	if err != nil {
+		return nil, pictures, err
+	}
+	h := r.flowInput(in.Camera)
+	h.Memory = memory
+	// How far the density is from the predicted one is how far the height of
+	// the prediction can be trusted.
+	h.Settings.HeightError, err = horizon.HeightError(h, pictures)
+	if err != nil {
+		return nil, pictures, err
+	}
+	r.Account, err = horizon.Interpret(h, pictures)
+	return r, pictures, err
 }
 
 // align lays the shots on top of each other.

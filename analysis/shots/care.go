@@ -207,9 +207,11 @@ type Normalisation int
 
 // The normalisations.
 const (
-	// Rescale divides each shot by its number over the mean number. It makes
-	// every pixel anticorrelated with all others by about its share of the
-	// variance of the number, of order 1/(atoms in the picture).
+	// Rescale divides each shot by its number over the mean number. Number that
+	// comes and goes by itself, through the ends of a picture that does not show
+	// the whole cloud, is taken for spread, and part of a band with it: 3 % of
+	// its height for a picture 44 ξ long around a window of 32 ξ, 1 % for one of
+	// 140 ξ (measured). Where the whole cloud is in the picture nothing is lost.
 	Rescale Normalisation = iota
 	// Raw does nothing.
 	Raw
