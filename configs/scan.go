@@ -165,3 +165,16 @@ func (s *Scan) UnitName() string {
 func (s *Scan) Label() string {
 	return strings.ReplaceAll(trailing.ReplaceAllString(s.Key, ""), "_", " ")
 }
+
+// ParseTemperature reads a temperature: with its unit, into K, in lab units, and
+// as a plain number else.
+func ParseTemperature(text string, inLab bool) (float64, error) {
+	if inLab {
+		return parseQuantity(text, temperature)
+	}
+	v, err := strconv.ParseFloat(strings.TrimSpace(text), 64)
+	if err == nil && !(v > 0 && v < 100) {
+		err = fmt.Errorf("%v is out of range", v)
+	}
+	return v, err
+}
