@@ -55,14 +55,14 @@ func (f *condition) follow(p plane, omega complex128, v float64, outer, inner co
 	return p
 }
 
-// still is the frequency, over c_u², that stands for zero: below it growth is
+// still is the frequency, over ω_max, that stands for zero: below it growth is
 // not told from none.
-const still = 1e-7
+const still = 1e-6
 
 // standing returns E at ω → 0, a real number that changes its sign where
 // another mode begins to grow.
 func (f *condition) standing() float64 {
-	return real(f.at(complex(0, still*f.cavity.Outside*f.cavity.Outside)))
+	return real(f.at(complex(0, still*f.cavity.topFrequency())))
 }
 
 // widest is the largest frequency at which modes are looked for. Waves of

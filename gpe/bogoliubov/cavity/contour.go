@@ -29,7 +29,6 @@ func (c *contour) at(z complex128) complex128 {
 	return v
 }
 
-
 // closeness is how much two neighbouring values may differ, as a share of the
 // one in the middle: then all three lie in a half-plane that excludes zero.
 const closeness = 0.7

@@ -29,15 +29,19 @@ func (e *CountError) Error() string {
 }
 
 // Modes returns the growing modes, fastest first; none for a cavity shorter
-// than its first threshold. Growth slower than 1e-7 c_u² is not told from
-// none. The modes are complete: their number is that which the argument
+// than its first threshold. Growth slower than 1e-6 ω_max is not told
+// from none. The modes are complete: their number is that which the argument
 // principle counts in the rectangle of all growth rates below GrowthBound and
 // frequencies up to well beyond ω_max; otherwise the error is a *CountError.
 //
 // Guesses, such as the modes of a slightly different cavity, save time and
 // change nothing else.
 func (c Cavity) Modes(guesses ...Mode) ([]Mode, error) {
-	s := newSearch(c)
+	return newSearch(c).modes(guesses)
+}
+
+// modes counts the zeros and finds as many.
+func (s *search) modes(guesses []Mode) ([]Mode, error) {
 	want, err := s.total()
 	if err != nil {
 		return nil, err
@@ -54,7 +58,7 @@ func (c Cavity) Modes(guesses ...Mode) ([]Mode, error) {
 		}
 	}
 	if n := s.found(); n != want {
-		return nil, &CountError{c, n, want}
+		return nil, &CountError{s.condition.cavity, n, want}
 	}
 	modes := make([]Mode, len(s.roots))
 	for i, w := range s.roots {
@@ -71,32 +75,32 @@ type search struct {
 	contour
 	condition *condition
 	all       cell
-	unit      float64      // c_u², by which frequencies are called small
+	unit      float64      // ω_max inside, by which frequencies are called small
 	roots     []complex128 // Re ≥ 0; a double root is there twice
 }
 
 func newSearch(c Cavity) *search {
-	s := &search{condition: newCondition(c), unit: c.Outside * c.Outside}
+	s := &search{condition: newCondition(c), unit: c.topFrequency()}
 	s.all = cell{0, c.widest(), still * s.unit, 1.01 * c.GrowthBound()}
 	// E follows waves to and fro. Each threshold below the length is another
 	// turn of their phase, and towards ω_max, where they come to rest, phases go
 	// as √(ω_max − ω). Beyond it one of them is evanescent; and high above the
 	// real axis the echo of a wave is too weak to count where it turns fast.
 	pieces := 6 + 4*c.Length*c.ZeroWave()/math.Pi
-	top := c.topFrequency()
+	top := s.unit
 	step := func(z complex128) float64 {
 		x := math.Abs(real(z)) - top
 		off := math.Hypot(x, imag(z)) / top
 		return math.Max(math.Max(imag(z), x)/2, top/pieces*math.Max(math.Min(2*math.Sqrt(off), 2), 1/pieces))
 	}
-	s.contour = contour{f: s.condition.at, known: map[complex128]complex128{}, step: step, least: 1e-9 * s.unit}
+	s.contour = contour{f: s.condition.at, known: map[complex128]complex128{}, step: step, least: 1e-8 * s.unit}
 	return s
 }
 
-// axial is the frequency, over c_u², below which a mode counts as one that does
+// axial is the frequency, over ω_max, below which a mode counts as one that does
 // not oscillate: where two such modes merge to become a pair, neither is known
 // better than to the root of the machine's precision.
-const axial = 3e-8
+const axial = 3e-7
 
 // found is the number of zeros on both sides of the imaginary axis.
 func (s *search) found() (n int) {
@@ -205,8 +209,8 @@ func (s *search) try(guess complex128, r cell) bool {
 // 10, 208 (1956): a parabola through the last three points.
 func (s *search) polish(w complex128, scale float64) (complex128, bool) {
 	bottom := s.all.bottom / 2
-	f := func(z complex128) complex128 { return s.condition.at(z) }
-	h := complex(0.02*math.Min(scale, math.Max(cmplx.Abs(w), 1e-3*s.unit)), 0)
+	f := s.f
+	h := complex(0.02*math.Min(scale, math.Max(cmplx.Abs(w), 1e-2*s.unit)), 0)
 	x0, x1, x2 := w-h, w+h, w
 	f0, f1, f2 := f(x0), f(x1), f(x2)
 	for range 40 {
@@ -234,7 +238,7 @@ func (s *search) polish(w complex128, scale float64) (complex128, bool) {
 		}
 		x0, x1, x2 = x1, x2, next
 		f0, f1, f2 = f1, f2, f(next)
-		if f2 == 0 || cmplx.Abs(x2-x1) < 1e-13*s.unit {
+		if f2 == 0 || cmplx.Abs(x2-x1) < 1e-12*s.unit {
 			return x2, true
 		}
 	}

@@ -87,8 +87,11 @@ type tail struct {
 func (t tail) at(x float64) (w vector) {
 	for i, k := range t.k {
 		e := cmplx.Exp(1i * k * complex(x-t.from, 0))
-		w[0] += t.u[i] * e
-		w[1] += t.v[i] * e
+		u, v := t.u[i]*e, t.v[i]*e
+		w[0] += u
+		w[1] += v
+		w[2] += 1i * k * u
+		w[3] += 1i * k * v
 	}
 	return w
 }
