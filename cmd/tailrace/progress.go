@@ -10,9 +10,10 @@ import (
 	"golang.org/x/term"
 )
 
-// progress shows how far an ensemble is: a bar with the time left on a
+// progress shows how far a work of many like parts is: a bar with the time left on a
 // terminal, a plain line now and then elsewhere. All goes to stderr.
 type progress struct {
+	parts        string // what is counted, such as "trajectories"
 	total, begun int
 	start, last  time.Time
 	pages        *mpb.Progress
@@ -22,12 +23,12 @@ type progress struct {
 // every is how often a line is printed where there is no terminal.
 const every = 15 * time.Second
 
-func newProgress(total, begun int) *progress {
-	p := &progress{total: total, begun: begun, start: time.Now(), last: time.Now()}
+func newProgress(parts string, total, begun int) *progress {
+	p := &progress{parts: parts, total: total, begun: begun, start: time.Now(), last: time.Now()}
 	if term.IsTerminal(int(os.Stderr.Fd())) {
 		p.pages = mpb.New(mpb.WithOutput(os.Stderr), mpb.WithWidth(48))
 		p.bar = p.pages.AddBar(int64(total),
-			mpb.PrependDecorators(decor.Name("trajectories "), decor.CountersNoUnit("%d of %d")),
+			mpb.PrependDecorators(decor.Name(parts+" "), decor.CountersNoUnit("%d of %d")),
 			mpb.AppendDecorators(decor.Any(func(decor.Statistics) string { return p.left() })))
 		p.bar.SetCurrent(int64(begun))
 	}
@@ -48,7 +49,7 @@ func (p *progress) estimate(now int) string {
 	return (perOne * time.Duration(p.total-now)).Round(time.Second).String()
 }
 
-// update takes the number of finished trajectories.
+// update takes the number of parts that are finished.
 func (p *progress) update(now int) {
 	if p.bar != nil {
 		p.bar.SetCurrent(int64(now))
@@ -56,7 +57,7 @@ func (p *progress) update(now int) {
 	}
 	if time.Since(p.last) >= every && now < p.total {
 		p.last = time.Now()
-		fmt.Fprintf(os.Stderr, "%d of %d trajectories, %s left\n", now, p.total, p.estimate(now))
+		fmt.Fprintf(os.Stderr, "%d of %d %s, %s left\n", now, p.total, p.parts, p.estimate(now))
 	}
 }
 

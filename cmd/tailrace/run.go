@@ -147,7 +147,7 @@ func (r *running) carry(ctx context.Context) error {
 	p, store := r.scenario.Problem, r.store
 	fmt.Fprintf(os.Stderr, "%s: %d points over %.4g ξ, %d trajectories\n", r.config.Name(), p.Grid.N, p.Grid.Length(), store.Count)
 	begun, earlier := store.Finished(), store.StepTime()
-	r.bar = newProgress(store.Count, begun)
+	r.bar = newProgress("trajectories", store.Count, begun)
 	start := time.Now()
 	err := r.ensemble.Run(ctx, store.Pending(), store.Count, r.options.workers, store)
 	r.bar.end()
