@@ -10,7 +10,12 @@ import (
 )
 
 // Branch is a mode followed through lengths of the cavity.
-type Branch struct{ Length, Frequency, GrowthRate []float64 }
+type Branch struct {
+	// Name explains its line, where a few have lines of their own and all have
+	// names.
+	Name                          string
+	Length, Frequency, GrowthRate []float64
+}
 
 // Growth shows growth rates and frequencies of a cavity's modes against its
 // length.
@@ -47,11 +52,19 @@ func (f Growth) Page() *Page {
 	lengths = append(lengths, f.Thresholds)
 	e, unit := exponent(max(largest(rates...), largest(frequencies...)))
 	unit = joined(unit, f.RateUnit)
-	const panelHeight = 150 * pt
+	const panelHeight = 175 * pt
 	const between = 8 * pt
 	width := pageWidth - marginLeft - marginRight
-	keys := newLegend(width, key{name: "a mode each", lines: branchLines[:1]}, key{lines: branchLines[1:2], name: "its neighbours"},
-		key{name: "thresholds", lines: []draw.LineStyle{thresholdLine}}, key{name: "this cavity", lines: []draw.LineStyle{ownLine}})
+	var list []key
+	for i, b := range f.Branches {
+		if len(f.Branches) > len(branchLines) || b.Name == "" {
+			list = []key{{name: "modes, a line each", lines: branchLines[:1]}}
+			break
+		}
+		list = append(list, key{name: b.Name, lines: branchLines[i : i+1]})
+	}
+	list = append(list, key{name: "thresholds", lines: []draw.LineStyle{thresholdLine}}, key{name: "this cavity", lines: []draw.LineStyle{ownLine}})
+	keys := newLegend(width, list...)
 	x := span(0.01, lengths...)
 	page := &Page{width: pageWidth, height: marginBottom + 2*panelHeight + between + keys.height() + 2*pt}
 	page.draw = func(c draw.Canvas) {
@@ -118,10 +131,10 @@ func (f Patterns) Page() *Page {
 	}
 	const between = 8 * pt
 	n := len(f.Shapes)
-	panelHeight := max(80*pt, 220*pt/vg.Length(n))
+	panelHeight := max(106*pt, 220*pt/vg.Length(n)) // room for three ticks
 	width := pageWidth - marginLeft - marginRight
-	keys := newLegend(width, key{name: "at once", lines: []draw.LineStyle{fitLine}},
-		key{name: "a quarter of a period later, less its growth", lines: theory[:1]},
+	keys := newLegend(width, key{name: "at one moment", lines: []draw.LineStyle{fitLine}},
+		key{name: "a quarter of a period later, growth left out", lines: theory[:1]},
 		key{name: "envelope", lines: []draw.LineStyle{levelLine}}, key{name: "between the horizons", tint: windowTint[1]})
 	height := vg.Length(n)*panelHeight + vg.Length(n-1)*between
 	page := &Page{width: pageWidth, height: marginBottom + height + keys.height() + 2*pt}

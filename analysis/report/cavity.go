@@ -150,7 +150,7 @@ func (r *Cavity) Summary(w io.Writer) error {
 		if more := len(r.Modes) - listed; more > 0 {
 			fmt.Fprintf(&b, "and %d slower ones, which --json lists\n", more)
 		}
-		notes = append(notes, "frequencies and rates are angular: amplitudes go as exp(growth rate × t), densities' variances as its square")
+		notes = append(notes, "frequencies and rates are angular: an amplitude grows as exp(growth rate × t), a correlation as its square")
 	}
 	notes = append(notes, fmt.Sprintf("the modes are complete: as many as the argument principle counts among growth rates above %s", u.say(1e-6*r.omegaMax(), Rate)))
 	if c.Width > 0 {
@@ -204,7 +204,11 @@ func (r *Cavity) growthFigure() *figure.Page {
 	u := r.Units
 	f := figure.Growth{Length: u.Value(r.Cavity.Length, Length), Thresholds: u.Values(r.Marks, Length), LengthUnit: u.Axis(Length), RateUnit: u.Axis(Rate)}
 	for _, b := range branches(r.Around, r.Marks, r.omegaMax()) {
-		f.Branches = append(f.Branches, figure.Branch{Length: u.Values(b.Length, Length), Frequency: u.Values(b.Frequency, Rate), GrowthRate: u.Values(b.GrowthRate, Rate)})
+		name := ""
+		if b.GrowthRate[0] == 0 { // its beginning is in the figure
+			name = fmt.Sprintf("mode from %.3g %s", u.Value(b.Length[0], Length), u.Axis(Length))
+		}
+		f.Branches = append(f.Branches, figure.Branch{Name: name, Length: u.Values(b.Length, Length), Frequency: u.Values(b.Frequency, Rate), GrowthRate: u.Values(b.GrowthRate, Rate)})
 	}
 	return f.Page()
 }
@@ -295,7 +299,7 @@ func (r *Cavity) patternFigure() (*figure.Page, error) {
 	f := figure.Patterns{Inside: figure.Range{Min: 0, Max: u.Value(c.Length, Length)}, LengthUnit: u.Axis(Length)}
 	// As far as the fastest fades to a twentieth, on the side where it is
 	// slowest to do so, but not so far that the inside is not seen.
-	reach := math.Min(3*(c.Velocity+c.Outside)/r.Modes[0].GrowthRate, 0.8*c.Length+8)
+	reach := math.Min(3*(c.Velocity+c.Outside)/r.Modes[0].GrowthRate, 0.35*c.Length+8)
 	const points = 1200
 	x := make([]float64, points)
 	for i := range x {

@@ -1,10 +1,13 @@
 package main
 
 import (
+	"cmp"
 	"context"
+	"errors"
 	"fmt"
 	"math"
 	"os"
+	"slices"
 
 	"github.com/spf13/cobra"
 
@@ -14,9 +17,9 @@ import (
 )
 
 type cavityOptions struct {
-	asJSON  bool
-	scan    string
-	figures string
+	asJSON        bool
+	scan, figures string
+	scans, draws  bool // whether they are given
 }
 
 func cavityCommand() *cobra.Command {
@@ -29,7 +32,10 @@ themselves: their frequencies, growth rates and e-folding times, and the lengths
 from which each of them grows. CONFIG, the name of an example or the path of a
 file, describes a uniform flow, [flow] kind = "uniform", and the [cavity] length.`,
 		Args: oneConfig,
-		RunE: func(cmd *cobra.Command, args []string) error { return o.run(cmd.Context(), args[0]) },
+		RunE: func(cmd *cobra.Command, args []string) error {
+			o.scans, o.draws = cmd.Flags().Changed("scan"), cmd.Flags().Changed("figures")
+			return o.run(cmd.Context(), args[0])
+		},
 	}
 	c.Flags().BoolVar(&o.asJSON, "json", false, "print one JSON object")
 	c.Flags().StringVar(&o.scan, "scan", "", "the modes at other lengths too: length=FIRST:LAST:NUMBER")
@@ -38,6 +44,9 @@ file, describes a uniform flow, [flow] kind = "uniform", and the [cavity] length
 }
 
 func (o *cavityOptions) run(ctx context.Context, name string) error {
+	if o.draws && o.figures == "" {
+		return &usageError{errors.New("--figures: the name of a folder is expected")}
+	}
 	config, err := configs.Load(name)
 	if err != nil {
 		return err
@@ -46,22 +55,22 @@ func (o *cavityOptions) run(ctx context.Context, name string) error {
 	if err != nil {
 		return err
 	}
-	out := &report.Cavity{Title: config.Title, Config: config.Source, Version: version,
+	out := &report.Cavity{Title: cmp.Or(config.Title, config.Name()), Config: config.Source, Version: version,
 		Units: report.Units{Lab: h.InLab, Scale: h.Scale}, Cavity: h.Cavity}
-	lengths, err := o.lengths(config, h)
+	lengths, err := o.lengths(config, h, out.Units)
 	if err != nil {
 		return err
 	}
 	if out.Modes, err = h.Modes(); err != nil {
 		return err
 	}
-	out.Thresholds = h.Thresholds(math.Max(h.Length, h.SharpThreshold(2)))
+	out.Thresholds = h.Thresholds(math.Max(h.Length, h.SharpThreshold(3)))
 	if lengths != nil {
 		if out.Scan, err = scan(ctx, h.Cavity, lengths); err != nil {
 			return err
 		}
 	}
-	if o.figures != "" {
+	if o.draws {
 		if err := o.draw(ctx, out); err != nil {
 			return err
 		}
@@ -78,8 +87,8 @@ func (o *cavityOptions) run(ctx context.Context, name string) error {
 }
 
 // lengths reads --scan, in condensate units; nil without it.
-func (o *cavityOptions) lengths(config *configs.Config, h *configs.TwoHorizons) ([]float64, error) {
-	if o.scan == "" {
+func (o *cavityOptions) lengths(config *configs.Config, h *configs.TwoHorizons, u report.Units) ([]float64, error) {
+	if !o.scans {
 		return nil, nil
 	}
 	lengths, err := config.Scan("cavity.length", o.scan)
@@ -92,7 +101,7 @@ func (o *cavityOptions) lengths(config *configs.Config, h *configs.TwoHorizons) 
 			lengths[i] = h.Scale.FromMetres(lengths[i])
 		}
 		if lengths[i] > longest {
-			return nil, &usageError{fmt.Errorf("--scan %q: at most %.4g healing lengths are allowed in this flow, in which a cavity has %d modes", o.scan, longest, cavity.MostThresholds)}
+			return nil, &usageError{fmt.Errorf("--scan %q: at most %.4g %s is allowed in this flow, in which a cavity has %d modes", o.scan, u.Value(longest, report.Length), u.Unit(report.Length), cavity.MostThresholds)}
 		}
 	}
 	return lengths, nil
@@ -105,33 +114,38 @@ func scan(ctx context.Context, c cavity.Cavity, lengths []float64) ([]cavity.Poi
 	return c.Scan(ctx, lengths, bar.update)
 }
 
-// draw makes the figures: of the lengths of --scan if there are enough for a
-// curve, and of those around the cavity's own otherwise.
+// draw makes the figures: over the range of lengths of --scan, or around the
+// cavity's own.
 func (o *cavityOptions) draw(ctx context.Context, out *report.Cavity) error {
 	if err := os.MkdirAll(o.figures, 0o777); err != nil {
 		return fmt.Errorf("the folder for the figures cannot be made: %w", err)
 	}
-	const enough = 100
-	out.Around = out.Scan
-	if len(out.Around) < enough {
-		from, to := surroundings(out.Cavity)
-		if n := len(out.Scan); n > 0 {
-			from, to = math.Min(out.Scan[0].Length, out.Scan[n-1].Length), math.Max(out.Scan[0].Length, out.Scan[n-1].Length)
+	from, to := surroundings(out.Cavity)
+	if n := len(out.Scan); n > 0 {
+		from, to = math.Min(out.Scan[0].Length, out.Scan[n-1].Length), math.Max(out.Scan[0].Length, out.Scan[n-1].Length)
+	}
+	const even = 200
+	var lengths []float64
+	for i := range even + 1 {
+		lengths = append(lengths, from+(to-from)*float64(i)/even)
+	}
+	// Close to thresholds, where curves are steep, more.
+	apart := math.Pi / out.Cavity.ZeroWave()
+	for _, d := range out.Cavity.Thresholds(to) {
+		if d < from || d > to {
+			continue
 		}
-		lengths := make([]float64, 241)
-		for i := range lengths {
-			lengths[i] = from + (to-from)*float64(i)/float64(len(lengths)-1)
-		}
-		var err error
-		if out.Around, err = scan(ctx, out.Cavity, lengths); err != nil {
-			return err
+		out.Marks = append(out.Marks, d)
+		for _, off := range []float64{-0.02, -0.008, -0.002, 0.002, 0.008, 0.02} {
+			if x := d + off*apart; x > from && x < to {
+				lengths = append(lengths, x)
+			}
 		}
 	}
-	first, last := out.Around[0].Length, out.Around[len(out.Around)-1].Length
-	for _, d := range out.Cavity.Thresholds(math.Max(first, last)) {
-		if d >= math.Min(first, last) && d <= math.Max(first, last) {
-			out.Marks = append(out.Marks, d)
-		}
+	slices.Sort(lengths)
+	var err error
+	if out.Around, err = scan(ctx, out.Cavity, lengths); err != nil {
+		return err
 	}
 	names, err := out.Figures(o.figures)
 	if err != nil {
@@ -144,13 +158,12 @@ func (o *cavityOptions) draw(ctx context.Context, out *report.Cavity) error {
 }
 
 // surroundings is the range of lengths around a cavity's own that the figure
-// shows: from below the first threshold, or five thresholds back, to two or
-// three on.
+// shows: from below the first threshold, or five thresholds back, to a few on.
 func surroundings(c cavity.Cavity) (from, to float64) {
 	apart := c.SharpThreshold(1) - c.SharpThreshold(0)
 	first := c.Thresholds(0)[0]
 	from = math.Max(0.5*first, c.Length-5*apart)
-	to = math.Max(c.Length+1.5*apart, first+3*apart)
+	to = math.Max(c.Length+1.5*apart, first+3.4*apart)
 	if from > 0.5*first && from < first+apart {
 		from = 0.5 * first
 	}
