@@ -52,13 +52,21 @@ func (c *Config) TwoHorizons() (*TwoHorizons, error) {
 	h.Cavity, err = cavity.New(v, outside, inside, distance, width)
 	switch {
 	case errors.Is(err, cavity.ErrTooLong):
-		longest := cavity.Cavity{Velocity: v, Outside: outside, Inside: inside}.SharpThreshold(cavity.MostThresholds)
-		allowed := fmt.Sprintf("%.4g", longest)
-		if h.InLab {
-			allowed = formatQuantity(h.Scale.Metres(longest), length)
+		say := func(x float64) string {
+			if h.InLab {
+				return formatQuantity(h.Scale.Metres(x), length)
+			}
+			return fmt.Sprintf("%.4g", x)
 		}
-		return nil, c.Fault("cavity.length", "", "at most "+allowed+" is allowed in this flow",
-			fmt.Sprintf("a longer cavity has more than %d modes, which nobody could tell apart", cavity.MostThresholds))
+		flow := cavity.Cavity{Velocity: v, Outside: outside, Inside: inside}
+		sharp := flow.Longest()
+		flow.Width = width
+		longest := flow.Longest()
+		if longest <= 0 {
+			return nil, c.Fault("flow.width", "", "at most "+say(width*sharp/(sharp-longest))+" is allowed in this flow", "waves take minutes to follow through wider edges, and hardly grow")
+		}
+		return nil, c.Fault("cavity.length", "", "at most "+say(longest)+" is allowed in this flow, with edges of this width",
+			fmt.Sprintf("sharp ones may be as far apart as %d modes need, whose rates nobody could tell apart", cavity.MostThresholds))
 	case err != nil:
 		return nil, c.Fault("flow.velocity", "", "a velocity between the two sound speeds", err.Error())
 	}

@@ -64,9 +64,11 @@ func TestNoTwoHorizons(t *testing.T) {
 		{"a sweep", sound + "[cavity]\nlength = \"12 um\"\n",
 			`q.toml: flow.kind = nothing: the modes of a cavity are those of a uniform flow, kind = "uniform", with velocity, sound_speed_up, sound_speed_down and width; the example lock shows how`},
 		{"too long", strings.Replace(twoEdges, "length = 12", "length = 2000", 1),
-			`q.toml:9: cavity.length = 2000: at most 1126 is allowed in this flow, a longer cavity has more than 400 modes, which nobody could tell apart`},
+			`q.toml:9: cavity.length = 2000: at most 1126 is allowed in this flow, with edges of this width, sharp ones may be as far apart as 400 modes need, whose rates nobody could tell apart`},
+		{"edges too wide", strings.Replace(twoEdges, "width = 0", "width = 40", 1),
+			`q.toml:7: flow.width = 40: at most 35.17 is allowed in this flow, waves take minutes to follow through wider edges, and hardly grow`},
 		{"too long in the laboratory", strings.Replace(twoEdgesLab, `"12 um"`, `"12 mm"`, 1),
-			`q.toml:11: cavity.length = "12 mm": at most 1.17 mm is allowed in this flow, a longer cavity has more than 400 modes, which nobody could tell apart`},
+			`q.toml:11: cavity.length = "12 mm": at most 1.16 mm is allowed in this flow, with edges of this width, sharp ones may be as far apart as 400 modes need, whose rates nobody could tell apart`},
 	} {
 		t.Run(row.name, func(t *testing.T) {
 			_, err := decode(t, row.text).TwoHorizons()

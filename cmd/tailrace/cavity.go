@@ -95,13 +95,13 @@ func (o *cavityOptions) lengths(config *configs.Config, h *configs.TwoHorizons, 
 	if err != nil {
 		return nil, &usageError{fmt.Errorf("--scan %q: %w", o.scan, err)}
 	}
-	longest := h.SharpThreshold(cavity.MostThresholds)
+	longest := h.Longest()
 	for i := range lengths {
 		if h.InLab {
 			lengths[i] = h.Scale.FromMetres(lengths[i])
 		}
 		if lengths[i] > longest {
-			return nil, &usageError{fmt.Errorf("--scan %q: at most %.4g %s is allowed in this flow, in which a cavity has %d modes", o.scan, u.Value(longest, report.Length), u.Unit(report.Length), cavity.MostThresholds)}
+			return nil, &usageError{fmt.Errorf("--scan %q: at most %.4g %s is allowed in this flow, with edges of this width", o.scan, u.Value(longest, report.Length), u.Unit(report.Length))}
 		}
 	}
 	return lengths, nil
@@ -167,5 +167,5 @@ func surroundings(c cavity.Cavity) (from, to float64) {
 	if from > 0.5*first && from < first+apart {
 		from = 0.5 * first
 	}
-	return math.Min(from, 0.9*c.Length), math.Min(to, c.SharpThreshold(cavity.MostThresholds))
+	return math.Min(from, 0.9*c.Length), math.Min(to, c.Longest())
 }

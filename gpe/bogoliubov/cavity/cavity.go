@@ -48,7 +48,8 @@ var (
 	// ErrSupersonicOutside means that the flow outside is not slower than
 	// sound, so that there is no horizon.
 	ErrSupersonicOutside = errors.New("the flow is supersonic outside too, so there are no horizons")
-	// ErrTooLong means that a cavity has more modes than are looked for.
+	// ErrTooLong means that a cavity has more modes than are looked for, or
+	// edges so wide that following waves through them would take minutes.
 	ErrTooLong = errors.New("the cavity is too long")
 )
 
@@ -56,6 +57,11 @@ var (
 // cavity whose modes are looked for; beyond it the growth rates of neighbours
 // differ by less than anybody could tell and the search would take minutes.
 const MostThresholds = 400
+
+// Longest returns the length of the longest cavity with these edges that New
+// takes: that with MostThresholds thresholds, less the room that smooth edges
+// need to become flat. It is negative where edges are too wide for any length.
+func (c Cavity) Longest() float64 { return c.SharpThreshold(MostThresholds) - 2*reach*c.Width }
 
 // New returns the cavity. It returns an error that wraps ErrSubsonicInside or
 // ErrSupersonicOutside where there are no horizons, ErrTooLong, or an error
@@ -77,8 +83,8 @@ func New(velocity, outside, inside, length, width float64) (Cavity, error) {
 		return Cavity{}, fmt.Errorf("%w: velocity %.4g, sound speed outside %.4g", ErrSupersonicOutside, velocity, outside)
 	case velocity <= inside:
 		return Cavity{}, fmt.Errorf("%w: velocity %.4g, sound speed inside %.4g", ErrSubsonicInside, velocity, inside)
-	case length > c.SharpThreshold(MostThresholds):
-		return Cavity{}, fmt.Errorf("%w: length %.4g, at most %.4g is allowed, which holds %d modes", ErrTooLong, length, c.SharpThreshold(MostThresholds), MostThresholds)
+	case length > c.Longest():
+		return Cavity{}, fmt.Errorf("%w: length %.4g with edges of width %.4g, at most %.4g is allowed", ErrTooLong, length, width, c.Longest())
 	}
 	return c, nil
 }

@@ -34,6 +34,7 @@ func TestNew(t *testing.T) {
 		{"sonic inside", 0.5, 1, 0.5, 12, 0, ErrSubsonicInside},
 		{"supersonic outside", 1.2, 1, 0.5, 12, 0, ErrSupersonicOutside},
 		{"too long", 0.75, 1, 0.5, 1200, 0, ErrTooLong},
+		{"too wide", 0.75, 1, 0.5, 12, 40, ErrTooLong},
 	} {
 		t.Run(row.name, func(t *testing.T) {
 			if _, err := New(row.v, row.outside, row.inside, row.length, row.widths); !errors.Is(err, row.want) {
@@ -155,6 +156,21 @@ func TestSmoothThresholds(t *testing.T) {
 	}
 	if n := both(modes); n != len(below)-1 {
 		t.Errorf("%d modes, thresholds %v", n, below)
+	}
+}
+
+// Edges that overlap so much that the flow is nowhere supersonic make no mode,
+// and the search agrees that there is none.
+func TestNowhereSupersonic(t *testing.T) {
+	c := must(t, 0.75, 1, 0.5, 1, 2)
+	d := c.shortest()
+	c = c.With(d)
+	near(t, "sound speed in the middle", c.SoundSpeed(d/2), c.Velocity, 1e-12)
+	if n, err := newSearch(c).total(); n != 0 || err != nil {
+		t.Errorf("%d modes, %v", n, err)
+	}
+	if first := c.Thresholds(0)[0]; !(first > d) {
+		t.Errorf("first threshold %g, supersonic from %g", first, d)
 	}
 }
 

@@ -37,6 +37,9 @@ func (e *CountError) Error() string {
 // Guesses, such as the modes of a slightly different cavity, save time and
 // change nothing else.
 func (c Cavity) Modes(guesses ...Mode) ([]Mode, error) {
+	if c.Length <= c.shortest() {
+		return nil, nil
+	}
 	return newSearch(c).modes(guesses)
 }
 

@@ -6,7 +6,8 @@ import "math"
 // grow, and the next one above, in rising order: SharpThreshold for sharp
 // edges, and for smooth ones the lengths at which the cavity, its edges
 // unchanged, has a mode that stands still. The number of them below the length
-// of a cavity is the number of growing modes, both of a pair counted.
+// of a cavity is the number of growing modes, both of a pair counted, those too
+// slow for Modes included.
 func (c Cavity) Thresholds(limit float64) []float64 {
 	var found []float64
 	if c.Width == 0 {
@@ -19,7 +20,8 @@ func (c Cavity) Thresholds(limit float64) []float64 {
 	// Far apart the edges know nothing of each other, and thresholds are half a
 	// zero-frequency wave apart.
 	stride := math.Pi / c.ZeroWave() / 4
-	low, fLow := stride/4, f(stride/4)
+	low := math.Max(stride/4, c.shortest())
+	fLow := f(low)
 	for len(found) == 0 || found[len(found)-1] < limit {
 		high := low + stride
 		fHigh := f(high)
@@ -29,6 +31,14 @@ func (c Cavity) Thresholds(limit float64) []float64 {
 		low, fLow = high, fHigh
 	}
 	return found
+}
+
+// shortest returns the length up to which smooth edges overlap so much that the
+// flow is nowhere supersonic. Every disturbance then costs energy, and none
+// grows.
+func (c Cavity) shortest() float64 {
+	// In the middle c² = c_u² − (c_u² − c_d²)tanh(D/2w).
+	return 2 * c.Width * math.Atanh((c.Outside-c.Velocity)*(c.Outside+c.Velocity)/c.drop())
 }
 
 // crossing returns where f changes its sign between a and b, by false position
