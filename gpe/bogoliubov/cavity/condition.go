@@ -1,8 +1,9 @@
 package cavity
 
 import (
-	"math"
 	"math/cmplx"
+
+	"tailrace/gpe/bogoliubov"
 )
 
 // condition is the function of ω whose zeros in the upper half-plane are the
@@ -73,12 +74,6 @@ func (c Cavity) widest() float64 {
 }
 
 // topFrequency is ω_max inside.
-func (c Cavity) topFrequency() float64 {
-	v, s := c.Velocity, c.Inside
-	root := math.Sqrt(v*v + 8*s*s)
-	p := (v + root) / 4 // the phase speed at the top
-	k := 2 * math.Sqrt((p-s)*(p+s))
-	return k * (v - p)
-}
+func (c Cavity) topFrequency() float64 { return bogoliubov.MaxFrequency(c.Velocity, c.Inside) }
 
 func finite(z complex128) bool { return !cmplx.IsNaN(z) && !cmplx.IsInf(z) }
