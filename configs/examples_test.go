@@ -14,7 +14,7 @@ import (
 )
 
 func TestExamplesDecode(t *testing.T) {
-	if want := []string{"basin", "harbour", "quay", "sluice", "uniform", "weir"}; !slices.Equal(Examples(), want) {
+	if want := []string{"basin", "harbour", "lock", "quay", "sluice", "uniform", "weir"}; !slices.Equal(Examples(), want) {
 		t.Errorf("examples %v, want %v", Examples(), want)
 	}
 	for _, name := range Examples() {
@@ -113,10 +113,10 @@ func TestLoad(t *testing.T) {
 		name, path, want string
 		missing          bool
 	}{
-		{"no such example", "key", `key: there is no example of this name, the examples are basin, harbour, quay, sluice, uniform, weir; a file is given by its path, such as ./scenario.toml`, true},
-		{"near an example", "quai", `quai: there is no example of this name, perhaps quay is meant; the examples are basin, harbour, quay, sluice, uniform, weir; a file is given by its path, such as ./scenario.toml`, true},
-		{"no name", "", `"": there is no example of this name, the examples are basin, harbour, quay, sluice, uniform, weir; a file is given by its path, such as ./scenario.toml`, true},
-		{"no such file", filepath.Join(dir, "none.toml"), `none.toml: there is no such file, the examples, which need no file, are basin, harbour, quay, sluice, uniform, weir`, true},
+		{"no such example", "key", `key: there is no example of this name, the examples are basin, harbour, lock, quay, sluice, uniform, weir; a file is given by its path, such as ./scenario.toml`, true},
+		{"near an example", "quai", `quai: there is no example of this name, perhaps quay is meant; the examples are basin, harbour, lock, quay, sluice, uniform, weir; a file is given by its path, such as ./scenario.toml`, true},
+		{"no name", "", `"": there is no example of this name, the examples are basin, harbour, lock, quay, sluice, uniform, weir; a file is given by its path, such as ./scenario.toml`, true},
+		{"no such file", filepath.Join(dir, "none.toml"), `none.toml: there is no such file, the examples, which need no file, are basin, harbour, lock, quay, sluice, uniform, weir`, true},
 		{"a folder", dir, `: this is a folder, give the scenario file in it`, false},
 		{"too long", write("long.toml", strings.Repeat("#", maxSize+1)), `long.toml: the file has 65537 bytes, at most 65536 are read, a scenario is a page of text`, false},
 		{"a fault inside", write("bad.toml", replace(t, sound, `5500`, `0`)), `bad.toml:11: cloud.atoms = 0: it must be at least 1 and at most 1e10, for example 5500`, false},

@@ -76,7 +76,15 @@ func (d *decoder) uniform() {
 	f := d.c.Flow
 	if d.sound("flow.velocity", "flow.sound_speed_up", "flow.sound_speed_down") &&
 		!(f.SoundSpeedDown < f.Velocity && f.Velocity < f.SoundSpeedUp) {
-		d.fault("flow.velocity", "a horizon needs sound_speed_down < velocity < sound_speed_up", "change one of the three")
+		why := "a horizon needs sound_speed_down < velocity < sound_speed_up"
+		switch {
+		case !d.has("cavity.length"):
+		case f.Velocity <= f.SoundSpeedDown:
+			why = "the flow is subsonic inside the cavity, so there are no horizons: " + why
+		default:
+			why = "the flow is supersonic outside the cavity, so there are no horizons: " + why
+		}
+		d.fault("flow.velocity", why, "change one of the three")
 	}
 	if d.sound("flow.width") && f.Width == 0 && !d.has("cavity.length") {
 		d.fault("flow.width", "a sharp edge is allowed with a [cavity] only: alone it has no temperature", "for example "+byName["flow.width"].sample(d.c.Units))

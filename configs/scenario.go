@@ -35,6 +35,8 @@ type Scenario struct {
 // atoms.
 func (c *Config) Scenario() (*Scenario, error) {
 	switch {
+	case c.Given("cavity"):
+		return nil, c.Fault("cavity", "", "an ensemble has one horizon, and this section asks for two", "leave it out, or see the modes between the two with tailrace cavity")
 	case c.Flow.Kind == FlowUniform:
 		return c.ring()
 	case c.Sweep():

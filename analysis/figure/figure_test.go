@@ -1,6 +1,7 @@
 package figure
 
 import (
+	"fmt"
 	"math"
 	"math/rand/v2"
 )
@@ -126,5 +127,31 @@ func examples() map[string]*Page {
 	return map[string]*Page{
 		"flow": exampleFlow(600).Page(), "flow_dots": exampleFlow(71).Page(), "map": exampleMap(350).Page(),
 		"cut": exampleCut().Page(), "spacetime": exampleSpaceTime().Page(), "null": exampleNull().Page(),
+		"growth": exampleGrowth(3, "µm").Page(), "growth_many": exampleGrowth(7, "").Page(), "patterns": examplePatterns().Page(),
 	}
+}
+
+func exampleGrowth(modes int, unit string) Growth {
+	f := Growth{Length: 11, LengthUnit: unit, RateUnit: "s^{−1}"}
+	for k := range modes {
+		from := 2 + 2*float64(k)
+		x := axis(from, 18, 200)
+		f.Thresholds = append(f.Thresholds, from)
+		f.Branches = append(f.Branches, Branch{Name: fmt.Sprintf("mode from %g", from), Length: x,
+			GrowthRate: apply(x, func(x float64) float64 { return 30 * (x - from) / x * math.Pow(math.Sin(x-from), 2) }),
+			Frequency:  apply(x, func(x float64) float64 { return 80 * math.Max(0, 1-(from+2)/x) })})
+	}
+	return f
+}
+
+func examplePatterns() Patterns {
+	x := axis(-10, 22, 500)
+	wave := func(phase float64) []float64 {
+		return apply(x, func(x float64) float64 { return 3e-5 * math.Cos(1.1*x+phase) * math.Exp(-math.Abs(x-6)/6) })
+	}
+	level := apply(x, func(x float64) float64 { return 3e-5 * math.Exp(-math.Abs(x-6)/6) })
+	return Patterns{Position: x, Inside: Range{0, 12}, LengthUnit: "µm", Shapes: []Shape{
+		{"mode 1: frequency 18.2, growth rate 12.5 s^{−1}", wave(0), wave(-math.Pi / 2), level},
+		{"mode 2: does not oscillate", wave(1), make([]float64, len(x)), level},
+	}}
 }

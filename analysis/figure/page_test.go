@@ -60,12 +60,15 @@ func words(t *testing.T, svg []byte) string {
 
 // What a reader must find in each figure.
 var said = map[string][]string{
-	"flow":      {"stationary flow", "horizon", "upstream window", "downstream window", "(µm)", "(atoms/µm)", "−20", "mean of 2000"},
-	"flow_dots": {"stationary flow", "horizon"},
-	"map":       {"predicted band", "analysis window", "(×10", "−3", "′", "40"},
-	"cut":       {"measured", "fit", "68 % band of the fit", "predicted, thermal", "predicted, exact scattering", "(ms)", "(×10"},
-	"spacetime": {"step", "characteristics", "(ms)", "(atoms/µm)", "(µm)"},
-	"null":      {"shuffled between shots", "measured", "6.2 standard deviations", "shuffles per bin", "(×10"},
+	"flow":        {"stationary flow", "horizon", "upstream window", "downstream window", "(µm)", "(atoms/µm)", "−20", "mean of 2000"},
+	"flow_dots":   {"stationary flow", "horizon"},
+	"map":         {"predicted band", "analysis window", "(×10", "−3", "′", "40"},
+	"cut":         {"measured", "fit", "68 % band of the fit", "predicted, thermal", "predicted, exact scattering", "(ms)", "(×10"},
+	"spacetime":   {"step", "characteristics", "(ms)", "(atoms/µm)", "(µm)"},
+	"growth":      {"mode from 2", "mode from 6", "thresholds", "this cavity", "growth rate", "frequency", "length", "(µm)"},
+	"growth_many": {"modes, a line each", "thresholds", "this cavity"},
+	"patterns":    {"at one moment", "a quarter of a period later", "envelope", "between the horizons", "mode 1: frequency", "mode 2: does not oscillate", "/ largest", "(µm)"},
+	"null":        {"shuffled between shots", "measured", "6.2 standard deviations", "shuffles per bin", "(×10"},
 }
 
 func TestPages(t *testing.T) {
@@ -173,6 +176,10 @@ func TestPoorData(t *testing.T) {
 		"cut tiny":           Cut{Measured: Points{"m", x, []float64{1e-12, -3e-12, 0, 2e-12}, nil}}.Page(),
 		"space-time level":   SpaceTime{Position: x[:2], Time: x[:2], Density: level}.Page(),
 		"space-time not":     SpaceTime{Position: x[:2], Time: x[:2], Density: bad}.Page(),
+		"growth of nothing":  Growth{}.Page(),
+		"growth not finite":  Growth{Branches: []Branch{{"m", x, bad, bad}, {"", x, level, hair}}, Thresholds: bad, Length: nan}.Page(),
+		"patterns of zeros":  Patterns{Position: x, Shapes: []Shape{{"m", make([]float64, 4), make([]float64, 4), make([]float64, 4)}}}.Page(),
+		"patterns not":       Patterns{Position: x, Shapes: []Shape{{"m", bad, bad, bad}}, Inside: Range{nan, 1}}.Page(),
 		"null of nothing":    Null{Measured: nan, Note: "none"}.Page(),
 		"null of one value":  Null{Shuffled: level, Measured: 2}.Page(),
 		"null with outliers": Null{Shuffled: []float64{0, 0, 0, 0, 0, 0, 0, 1e6, nan}, Measured: 1e6, Note: "at the right rim"}.Page(),
@@ -197,16 +204,19 @@ func TestPoorData(t *testing.T) {
 func TestMistakesPanic(t *testing.T) {
 	two, three := []float64{1, 2}, []float64{1, 2, 3}
 	for name, page := range map[string]func(){
-		"y without x":             func() { Flow{Density: Points{"", two, three, nil}}.Page() },
-		"errors of another count": func() { Flow{Density: Points{"", two, two, three}}.Page() },
-		"curve of another count":  func() { Flow{PredictedMach: Curve{"", two, three}}.Page() },
-		"map not square":          func() { Map{Position: two, Value: three}.Page() },
-		"map of falling axis":     func() { Map{Position: []float64{1, 0}, Value: make([]float64, 4)}.Page() },
-		"map of one cell":         func() { Map{Position: two[:1], Value: two[:1]}.Page() },
-		"band without its high":   func() { Cut{Fit: Curve{"", two, two}, Low: two}.Page() },
-		"band of another count":   func() { Cut{Fit: Curve{"", two, two}, Low: three, High: three}.Page() },
-		"four predictions":        func() { Cut{Predicted: make([]Curve, 4)}.Page() },
-		"space-time not a grid":   func() { SpaceTime{Position: two, Time: two, Density: three}.Page() },
+		"y without x":              func() { Flow{Density: Points{"", two, three, nil}}.Page() },
+		"errors of another count":  func() { Flow{Density: Points{"", two, two, three}}.Page() },
+		"curve of another count":   func() { Flow{PredictedMach: Curve{"", two, three}}.Page() },
+		"map not square":           func() { Map{Position: two, Value: three}.Page() },
+		"map of falling axis":      func() { Map{Position: []float64{1, 0}, Value: make([]float64, 4)}.Page() },
+		"map of one cell":          func() { Map{Position: two[:1], Value: two[:1]}.Page() },
+		"band without its high":    func() { Cut{Fit: Curve{"", two, two}, Low: two}.Page() },
+		"band of another count":    func() { Cut{Fit: Curve{"", two, two}, Low: three, High: three}.Page() },
+		"four predictions":         func() { Cut{Predicted: make([]Curve, 4)}.Page() },
+		"branch without a rate":    func() { Growth{Branches: []Branch{{"", two, two, three}}}.Page() },
+		"patterns of no modes":     func() { Patterns{Position: two}.Page() },
+		"pattern of another count": func() { Patterns{Position: two, Shapes: []Shape{{"", two, two, three}}}.Page() },
+		"space-time not a grid":    func() { SpaceTime{Position: two, Time: two, Density: three}.Page() },
 	} {
 		t.Run(name, func(t *testing.T) {
 			defer func() {

@@ -33,7 +33,11 @@ says otherwise.`,
 				return err
 			}
 			var checks []lab.Check
-			if config.Sweep() || config.Flow.Kind == configs.FlowUniform {
+			if config.Given("cavity") {
+				if _, err := config.TwoHorizons(); err != nil {
+					return err
+				}
+			} else if config.Sweep() || config.Flow.Kind == configs.FlowUniform {
 				s, err := config.Scenario()
 				if err != nil {
 					return err

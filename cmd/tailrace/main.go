@@ -52,7 +52,7 @@ func run() int {
 	root.SetFlagErrorFunc(func(c *cobra.Command, err error) error {
 		return &usageError{fmt.Errorf("%w; %s --help lists what there is", err, c.CommandPath())}
 	})
-	root.AddCommand(runCommand(), planCommand(), spectrumCommand(), interpretCommand(), rehearseCommand(), checkCommand(), examplesCommand())
+	root.AddCommand(runCommand(), planCommand(), spectrumCommand(), interpretCommand(), rehearseCommand(), cavityCommand(), checkCommand(), examplesCommand())
 	root.PersistentPreRunE = func(*cobra.Command, []string) error {
 		if err := lanes.CheckKernel(); err != nil {
 			return &usageError{fmt.Errorf("%s = %q: %w", lanes.Variable, os.Getenv(lanes.Variable), err)}
